@@ -23,6 +23,7 @@ export default defineConfig({
           include: [REAL],
           pool: 'forks',
           fileParallelism: false,
+          globalSetup: ['tests/real/build.ts'],
           testTimeout: 120_000,
           hookTimeout: 60_000,
         },

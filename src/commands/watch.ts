@@ -1,0 +1,72 @@
+import { requireTextbook } from '../stand/budget.js';
+import { loadStand } from '../stand/load.js';
+import { watchPrice } from '../stand/price.js';
+import type { Stand } from '../stand/types.js';
+import { FINE, parse, verb } from './cli.js';
+import { StandViewer } from './standView.js';
+import { standRun, type StandListener } from './standRun.js';
+import type { Source } from '../../adapters/source.js';
+
+/** Readings of each channel that the screen's pictures may show. */
+export const TREND = 2000;
+
+/** `kilter watch STAND`: the live screen. */
+export async function run(args: readonly string[]): Promise<number> {
+  const command = verb('watch', 'Watches a stand on the terminal. Alarms go to the alarm log first, then to the screen.')
+    .argument('<stand>', 'the stand file')
+    .option('--log <file>', 'the alarm log, instead of the one the stand file names');
+  const done = parse(command, args);
+  if (done !== null) return done;
+  const stand = loadStand(command.args[0]!);
+  requireTextbook(stand);
+  const { log } = command.opts<{ log?: string }>();
+  return watch(log === undefined ? stand : { ...stand, log: { ...stand.log, file: log } });
+}
+
+/**
+ * The screen on a stand, until the user quits.
+ * @param extra what only the demo has: sources already made, further words for the status line, an end by itself
+ */
+export async function watch(
+  stand: Stand,
+  extra: { sources?: readonly Source[]; notice?: () => string | null; until?: number } = {},
+): Promise<number> {
+  const { openScreen, checkTerminal } = await import('../screen/shell.js');
+  checkTerminal(process.env, process.stdin, process.stdout); // before anything is opened or written
+  const notes: string[] = [];
+  const pending: { trouble: string | null } = { trouble: null };
+  let viewer: StandViewer | null = null;
+  let tell: (sentence: string) => void = (sentence) => notes.push(sentence);
+  const listener: StandListener = {
+    onKept: () => undefined, // the book has it; the next frame shows it
+    onPhase: () => undefined,
+    onLogTrouble: (sentence) => {
+      pending.trouble = sentence;
+      if (viewer) viewer.logTrouble = sentence;
+    },
+    onNote: (sentence) => tell(sentence),
+  };
+  const { runtime, book, log } = await standRun(stand, listener, TREND, extra.sources);
+  const price = watchPrice(stand);
+  viewer = new StandViewer(stand.name, runtime, book, TREND, () => extra.notice?.() ?? price);
+  viewer.logTrouble = pending.trouble;
+  const { select, view } = { select: viewer.select.bind(viewer), view: viewer.view.bind(viewer) };
+  await new Promise<void>((resolve, reject) => {
+    const screen = openScreen({
+      env: process.env,
+      view,
+      select,
+      onQuit: () => resolve(),
+      onFatal: reject,
+      onHangUp: () => resolve(),
+      rotate: () => log.rotate(),
+    });
+    tell = (sentence) => screen.message(sentence);
+    for (const note of notes) screen.message(note);
+    if (extra.until !== undefined) setTimeout(() => (screen.close(), resolve()), extra.until);
+    runtime.start();
+  });
+  await runtime.stop();
+  process.stderr.write(`kilter: ${runtime.readings} readings, ${book.raisedCount} alarms; the alarm log is ${stand.log.file}\n`);
+  return FINE;
+}
