@@ -11,7 +11,7 @@ export interface SourceBench {
   /** The slot whose readings {@link feed} makes; 0 by default. Readings of other slots are left out of account. */
   readonly slot?: number;
   /** The value of reading k, where the kind of source makes its own values; {@link valueOf} by default. */
-  readonly valueOf?: (k: number) => number;
+  readonly made?: (k: number) => number;
   /**
    * Puts the readings from <= k < to on the transport, in this order. For a source that must find everything when it
    * starts (`prepared`) it is called before the start, else after the source has said 'open'.
@@ -73,7 +73,7 @@ export function describeSource(name: string, setUp: () => Promise<SourceBench>, 
     };
     const values = (): number[] => sink.values(bench?.slot ?? 0);
     const fed = (from: number, to: number): number[] =>
-      Array.from({ length: to - from }, (_, i) => (bench?.valueOf ?? valueOf)(from + i));
+      Array.from({ length: to - from }, (_, i) => (bench?.made ?? valueOf)(from + i));
     const come = (count: number): Promise<void> => until(() => values().length >= count, `${count} readings have come`);
 
     afterEach(async () => {
@@ -96,7 +96,7 @@ export function describeSource(name: string, setUp: () => Promise<SourceBench>, 
       await come(300);
       await sleep(30); // time for one too many
       expect(values().slice(0, 300)).toEqual(fed(0, 300));
-      if (!bench?.valueOf) expect(values()).toHaveLength(300);
+      if (!bench?.made) expect(values()).toHaveLength(300);
       expect(sink.faults).toEqual([]);
     });
 
@@ -189,7 +189,7 @@ export function describeSource(name: string, setUp: () => Promise<SourceBench>, 
           next += 10;
           await sleep(20);
         }
-        await until(() => values().includes((bench?.valueOf ?? valueOf)(next - 1)), 'the newest reading has come');
+        await until(() => values().includes((bench?.made ?? valueOf)(next - 1)), 'the newest reading has come');
         const known = new Set(fed(0, next));
         expect(values().filter((value) => !known.has(value))).toEqual([]);
         expect(values()).toEqual([...new Set(values())].toSorted((a, b) => a - b));
