@@ -53,9 +53,3 @@ function cancelled(): Error {
 function isLinux(port: BindingPortInterface): port is LinuxPort {
   return process.platform === 'linux' && 'fd' in port && 'poller' in port;
 }
-
-/** The descriptor of an open port, or null where the platform has none. */
-export function descriptorOf(port: SerialPort): number | null {
-  const inner = port.port as unknown as { fd?: number | null } | undefined;
-  return inner?.fd ?? null;
-}

@@ -5,7 +5,7 @@ import { LineFeed } from '../decoding/lineFeed.js';
 import { Legibility } from '../framing/legibility.js';
 import type { SerialOptions } from '../options.js';
 import type { Sink, Source, SourcePhase, Wanted } from '../source.js';
-import { descriptorOf, hangUpBinding } from './binding.js';
+import { hangUpBinding } from './binding.js';
 import { markParityErrors } from './parityMarks.js';
 import { whyNotOpen } from './trouble.js';
 
@@ -101,12 +101,10 @@ class SerialSource implements Source {
     this.wasOpen = true;
     this.legibility.reset();
     this.feed.open(this.sink, true);
-    const descriptor = descriptorOf(port);
-    if (descriptor !== null)
-      this.stty = markParityErrors(descriptor, (succeeded) => {
-        if (!succeeded && port === this.port && this.options.parity !== 'none')
-          this.say('open', `${this.label} is open, but bytes with parity errors cannot be told: stty did not set -ignpar.`);
-      });
+    this.stty = markParityErrors(this.options.path, (succeeded) => {
+      if (!succeeded && port === this.port && this.options.parity !== 'none')
+        this.say('open', `${this.label} is open, but bytes with parity errors cannot be told: stty did not set -ignpar.`);
+    });
     this.heard = true;
     this.probe = setInterval(() => this.ask(port), PROBE_EVERY);
     this.say('open', `${this.label} is open at ${this.settings()}.`);
