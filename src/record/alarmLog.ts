@@ -22,7 +22,7 @@ export interface AlarmLogOptions {
   readonly ballastBytes?: number;
   /** Wait before the first retry in ms, doubled for each further one up to five times as long; default 1000. */
   readonly retryAfter?: number;
-  /** Longest that `close` takes in ms; default 800. */
+  /** Longest that `close` goes on in ms when nothing reaches the disk; default 800. */
   readonly closeWithin?: number;
   readonly now?: () => number;
   readonly disk?: Disk;
@@ -53,6 +53,10 @@ export class AlarmLog {
   private retry: NodeJS.Timeout | null = null;
   private recovery: NodeJS.Timeout | null = null;
   private delay: number;
+  private most = BATCH; // bytes of the next write: less while the disk is full
+  private tried = 0; // records in the last write, and their bytes
+  private triedBytes = 0;
+  private progressAt = 0;
   private cause: string | null = null;
   private said: string | null = null;
   private reserveGone = false;
@@ -180,7 +184,7 @@ export class AlarmLog {
   private async step(): Promise<void> {
     const { file, backlog } = this;
     if (!this.hasOpened) this.begin();
-    if (!file.isOpen) this.goOn(file.reopen());
+    if (!file.isUsable) this.goOn(await file.reopen());
     if (this.turnWanted) await this.turn();
     const headers = [this.continued, this.opened].filter((header) => header !== null);
     const lead = headers.reduce((sum, { bytes }) => sum + bytes, 0);
@@ -188,8 +192,10 @@ export class AlarmLog {
     const isNew = file.end === 0 || this.isFresh;
     const next = lead || (backlog.peek(0, 1)[0]?.record.bytes ?? 0);
     if (!isNew && next > room) return this.turn();
-    const batch = backlog.peek(Math.min(BATCH, room) - lead, lead > 0 ? 0 : 1);
-    if (lead + batch.length > 0) await this.write(headers, batch);
+    const batch = backlog.peek(Math.min(this.most, room) - lead, lead > 0 ? 0 : 1);
+    this.tried = headers.length + batch.length;
+    this.triedBytes = batch.reduce((sum, { record }) => sum + record.bytes, lead);
+    if (this.tried > 0) await this.write(headers, batch);
   }
 
   private async write(headers: readonly Sealed[], batch: readonly Waiting[]): Promise<void> {
@@ -211,6 +217,8 @@ export class AlarmLog {
     for (const { onDurable } of batch) callSafely(onDurable);
     this.answer();
     this.delay = this.firstDelay;
+    this.most = Math.min(this.most * 2, BATCH);
+    this.progressAt = performance.now();
     this.vanishedBefore = false;
     if (this.said !== null) await this.recover();
   }
@@ -227,7 +235,7 @@ export class AlarmLog {
   private async turn(): Promise<void> {
     const { file } = this;
     if (file.end > 0 && !(await file.isMoved())) await file.moveAway();
-    this.goOn(file.reopen());
+    this.goOn(await file.reopen());
     this.turnWanted = false;
   }
 
@@ -238,7 +246,7 @@ export class AlarmLog {
   /** @returns whether to try again at once; otherwise a timer will */
   private overcome(error: unknown): boolean {
     const { file, options, ballast } = this;
-    file.drop();
+    file.suspect();
     if (error instanceof Vanished && !this.vanishedBefore) {
       this.vanishedBefore = true;
       options.onNote(`${error.message} A new one was begun; what was in memory goes there.`);
@@ -249,7 +257,11 @@ export class AlarmLog {
       this.say(`${describe(error, file.path)} The reserve beside it was released, so that alarms still get through for a while.`);
       return true;
     }
-    if (isTooLarge(error)) this.turnWanted = true;
+    if ((isFull(error) || isTooLarge(error)) && this.tried > 1) {
+      this.most = Math.max(1, Math.min(this.most, this.triedBytes) >> 1); // room for some is better than none
+      return true;
+    }
+    if (isTooLarge(error) && !this.isFresh) this.turnWanted = true;
     this.say(`${describe(error, file.path)} Alarms wait in memory and are written as soon as that is possible.`);
     this.retry = setTimeout(() => {
       this.retry = null;
@@ -284,13 +296,14 @@ export class AlarmLog {
   }
 
   private async finish(): Promise<void> {
-    const until = performance.now() + (this.options.closeWithin ?? CLOSE_WITHIN);
-    await this.flush(until);
+    this.progressAt = performance.now();
+    await this.flush();
     const left = this.backlog.length + this.backlog.lost;
     if (!this.hasWork) {
       this.backlog.add(seal({ event: 'closed', time: this.time() }), () => undefined);
-      await this.flush(until);
+      await this.flush();
     }
+    if (this.pumping) await within(this.closeWithin / 10, this.pumping);
     if (this.retry) clearTimeout(this.retry);
     if (this.recovery) clearTimeout(this.recovery);
     if (left > 0) {
@@ -302,16 +315,20 @@ export class AlarmLog {
     this.lock?.release();
   }
 
-  /** Writes what waits, trying again and again until the time is up. */
-  private async flush(until: number): Promise<void> {
+  private get closeWithin(): number {
+    return this.options.closeWithin ?? CLOSE_WITHIN;
+  }
+
+  /** Writes what waits, trying again and again until nothing has reached the disk for nine tenths of the time. */
+  private async flush(): Promise<void> {
+    const left = () => this.progressAt + this.closeWithin * 0.9 - performance.now();
     for (;;) {
       if (this.retry) clearTimeout(this.retry);
       this.retry = null;
       this.wake();
-      const left = until - performance.now();
-      await within(left, Promise.all([this.pumping, this.making]));
-      if (!this.hasWork || performance.now() >= until) return;
-      await pause(Math.min(CLOSE_RETRY, until - performance.now()));
+      await within(left(), Promise.all([this.pumping, this.making]));
+      if (!this.hasWork || left() <= 0) return;
+      await pause(Math.min(CLOSE_RETRY, left()));
     }
   }
 }

@@ -1,4 +1,4 @@
-import { linkSync, readFileSync, renameSync, unlinkSync, writeFileSync } from 'node:fs';
+import { linkSync, readFileSync, renameSync, rmSync, unlinkSync, writeFileSync } from 'node:fs';
 import { clean } from '../text/clean.js';
 import { UserError } from '../text/errors.js';
 
@@ -25,8 +25,8 @@ export function takeLock(log: string): Lock {
   const path = `${log}.lock`;
   const own = `${path}.${process.pid}`;
   const text = JSON.stringify(holder(process.pid)) + '\n';
-  writeFileSync(own, text, { mode: 0o640 });
   try {
+    writeFileSync(own, text, { mode: 0o640 });
     for (let tries = 0; tries < 10; tries++) {
       if (linkOnce(own, path)) return { release: () => release(path, text) };
       const found = read(path);
@@ -43,7 +43,7 @@ export function takeLock(log: string): Lock {
     }
     throw new UserError(`The lock ${clean(path, 300)} is fought over.`, 'See which processes write this log.');
   } finally {
-    unlinkSync(own);
+    rmSync(own, { force: true });
   }
 }
 

@@ -1,5 +1,5 @@
 import { closeSync, constants, existsSync, fchmodSync, fdatasyncSync, fstatSync, fsyncSync, ftruncateSync, openSync, readlinkSync, readSync, renameSync, writeSync, type Stats } from 'node:fs';
-import { rename, stat } from 'node:fs/promises';
+import { open, rename, stat, type FileHandle } from 'node:fs/promises';
 import { basename, dirname } from 'node:path';
 import { clean } from '../text/clean.js';
 import { UserError } from '../text/errors.js';
@@ -26,12 +26,13 @@ export class Vanished extends Error {
 const FLAGS = constants.O_RDWR | constants.O_APPEND | constants.O_NOFOLLOW;
 
 /**
- * The file under a log: it ends at a record's boundary at all times except within a `commit`. Every failure closes it;
+ * The file under a log: it ends at a record's boundary at all times except within a `commit`. After a failure
  * `reopen` brings it back to the boundary.
  */
 export class LogFile {
   private fd: number | null = null;
   private seen: Pick<Stats, 'dev' | 'ino'> | null = null;
+  private isSuspect = false;
   private movedTo: string | null = null;
   /** The name of the file that was closed last. */
   private left: string | null = null;
@@ -45,8 +46,13 @@ export class LogFile {
     private readonly now: () => number,
   ) {}
 
-  get isOpen(): boolean {
-    return this.fd !== null;
+  get isUsable(): boolean {
+    return this.fd !== null && !this.isSuspect;
+  }
+
+  /** After a failure: the file is to be reopened. It stays open until then, for the system may give its number to another file. */
+  suspect(): void {
+    this.isSuspect = true;
   }
 
   /**
@@ -70,10 +76,11 @@ export class LogFile {
       if (!tail.chained) {
         this.onNote(`The chain of ${clean(this.path, 300)} is broken near its end: a line was changed or removed. It goes on from its last line; kilter verify shows where it broke.`);
       }
+      const before = tail.hash !== null ? { hash: tail.hash, from: null } : this.lastRotated();
       this.fd = fd;
       this.seen = status;
       this.end = tail.end;
-      return tail.hash !== null ? { hash: tail.hash, from: null, tornBytes } : { ...this.lastRotated(), tornBytes };
+      return { ...before, tornBytes };
     } catch (error) {
       closeSync(fd);
       throw error;
@@ -84,12 +91,13 @@ export class LogFile {
    * Opens the file again after a failure or after it was moved away.
    * @returns the name of the file that the chain comes from where this is another file than before, else null
    */
-  reopen(): string | null {
-    this.drop();
+  async reopen(): Promise<string | null> {
+    await this.createIfMissing();
     const fd = this.openDescriptor();
+    let status: Stats;
     let isSame: boolean;
     try {
-      const status = fstatSync(fd);
+      status = fstatSync(fd);
       isSame = status.dev === this.seen?.dev && status.ino === this.seen.ino;
       if (isSame && status.size > this.end) ftruncateSync(fd, this.end); // part of a record, or lines that may not have lasted
       else if (isSame && status.size < this.end) this.noteShrunk(status.size);
@@ -98,7 +106,9 @@ export class LogFile {
       throw error;
     }
     if (isSame) {
+      this.drop();
       this.fd = fd;
+      this.seen = status;
       return null;
     }
     tryClose(fd);
@@ -152,9 +162,10 @@ export class LogFile {
 
   /** Closes the file; what is on the disk stays as it is. */
   drop(): void {
+    this.isSuspect = false;
     if (this.fd === null) return;
     this.left = this.currentName(this.fd);
-    this.movedTo = null;
+    this.movedTo = this.seen = null;
     tryClose(this.fd);
     this.fd = null;
   }
@@ -166,6 +177,24 @@ export class LogFile {
     } catch {
       // `reopen` tries again before anything else is written
     }
+  }
+
+  /** As `openDescriptor` does at the start, but without holding up the readings while the disk works. */
+  private async createIfMissing(): Promise<void> {
+    makeFoldersAbove(this.path);
+    let handle: FileHandle;
+    try {
+      handle = await open(this.path, 'wx', 0o640);
+    } catch (error) {
+      if ((error as NodeJS.ErrnoException).code === 'EEXIST') return;
+      throw error;
+    }
+    try {
+      await handle.chmod(0o640);
+    } finally {
+      await handle.close();
+    }
+    await syncFolder(dirname(this.path));
   }
 
   private openDescriptor(): number {
