@@ -1,3 +1,4 @@
+import { spawnSync } from 'node:child_process';
 import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -94,6 +95,18 @@ describe('a wrong baud rate', () => {
     await says(sink, /can be read again/);
     expect([sink.count('unread'), sink.count('bad-bytes')]).toEqual([1, 100]);
     expect(new Set(sink.values())).toEqual(new Set([1.5, 2.5]));
+  });
+});
+
+describe('a byte with a parity error', () => {
+  it('is asked of the driver as a NUL, which refuses its line, and not dropped silently', async () => {
+    const { sink } = open(pair.path);
+    const flags = (): string => spawnSync('stty', ['-F', pair.path, '-a'], { encoding: 'utf8' }).stdout;
+    await until(() => sink.is('open') && / -ignpar\b/.test(flags()), 'the line does not ignore parity errors');
+    expect(flags()).toMatch(/ -parmrk\b/);
+    await pair.send('\n1.5\n2\0.5\n3.5\n');
+    await until(() => sink.readings.length === 2, 'the other lines came');
+    expect([sink.values(), sink.count('bad-bytes')]).toEqual([[1.5, 3.5], 1]);
   });
 });
 
