@@ -6,8 +6,9 @@ import { Legibility } from '../framing/legibility.js';
 import type { SerialOptions } from '../options.js';
 import type { Sink, Source, SourcePhase, Wanted } from '../source.js';
 import { hangUpBinding } from './binding.js';
+import { lockHolder } from './lock.js';
 import { markParityErrors } from './parityMarks.js';
-import { whyNotOpen } from './trouble.js';
+import { whoHasIt, whyNotOpen } from './trouble.js';
 
 const STOP_WITHIN = 800; // ms that closing may take
 const PROBE_EVERY = 5000; // ms without a byte until the driver is asked whether the line is still there
@@ -72,15 +73,23 @@ class SerialSource implements Source {
   }
 
   private readonly open = (): void => {
-    const { path, baudRate, dataBits, parity, stopBits } = this.options;
     if (this.said === '') this.say('connecting', `Opening ${this.label} at ${this.settings()}.`);
+    void lockHolder(this.options.path).then((holder) => {
+      if (this.stopping) return;
+      if (holder) this.refusedOpening(whoHasIt(this.label, holder));
+      else this.connect();
+    });
+  };
+
+  private connect(): void {
+    const { path, baudRate, dataBits, parity, stopBits } = this.options;
     let port: SerialPort;
     try {
       // A new object for every opening: one whose stream has failed would open again but never read.
       const binding = { binding: hangUpBinding } as object;
       port = new SerialPort({ path, baudRate, dataBits, parity, stopBits, hupcl: false, autoOpen: false, highWaterMark: CHUNK, ...binding });
     } catch (error) {
-      this.refusedOpening(error as Error);
+      this.refusedOpening(whyNotOpen(path, error as Error));
       return;
     }
     this.port = port;
@@ -91,10 +100,10 @@ class SerialSource implements Source {
       if (this.stopping) this.abandoned?.(error ? null : port);
       else if (error) {
         this.port = null;
-        this.refusedOpening(error);
+        this.refusedOpening(whyNotOpen(path, error));
       } else this.opened(port);
     });
-  };
+  }
 
   private opened(port: SerialPort): void {
     if (!this.sink) return;
@@ -136,9 +145,9 @@ class SerialSource implements Source {
     this.later();
   }
 
-  private refusedOpening(error: Error): void {
+  private refusedOpening(why: string | Promise<string>): void {
     this.later();
-    void whyNotOpen(this.options.path, error).then((sentence) => {
+    void Promise.resolve(why).then((sentence) => {
       if (this.stopping || this.port?.isOpen) return;
       this.say(this.wasOpen ? 'lost' : 'connecting', `${sentence} Trying again.`);
     });

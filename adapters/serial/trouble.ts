@@ -2,6 +2,7 @@ import { constants } from 'node:fs';
 import { access, readdir, stat } from 'node:fs/promises';
 import { SerialPort } from 'serialport';
 import { clean } from '../../src/text/clean.js';
+import type { Holder } from './lock.js';
 
 const BY_ID = '/dev/serial/by-id';
 const LIST_WITHIN = 2000; // ms; listing asks udevadm, which may be slow or absent
@@ -21,12 +22,18 @@ export async function whyNotOpen(path: string, error: Error): Promise<string> {
     return `${port} is ${found.isDirectory() ? 'a directory' : 'a file'}, not a serial line. For a file of readings write \`recording:\` in place of \`serial:\`.`;
   if (/permission denied/i.test(said) || (await isBarred(path)))
     return `${port} may not be read and written by this user. Add the user to the group that owns it, as a rule with \`sudo usermod -aG dialout $USER\`, and log in again.`;
-  if (/lock|busy|temporarily unavailable/i.test(said))
-    return `${port} is in use by another program. Close that one, or find it with \`fuser -v ${port}\`.`;
+  if (/lock|busy|temporarily unavailable/i.test(said)) return whoHasIt(port, null);
   if (/inappropriate ioctl|not a tty/i.test(said)) return `${port} is a device, but not a serial line.`;
   if (/baud/i.test(said)) return `${port} does not take these settings: ${clean(said, 120)}. Check baudRate.`;
   if (/input\/output|no such device/i.test(said)) return `${port} is there but does not answer: ${clean(said, 120)}. Check the plug and the cable.`;
   return `${port} did not open: ${clean(said, 160)}.`;
+}
+
+/** Says that another program holds the port, and which as far as it is known. */
+export function whoHasIt(port: string, holder: Holder | null): string {
+  if (holder === null || holder.pid <= 0) return `${port} is in use by another program. Close that one, or find it with \`fuser -v ${port}\`.`;
+  const who = holder.name === null ? `process ${holder.pid}` : `${holder.name} (process ${holder.pid})`;
+  return `${port} is in use by another program: ${who}. Close that one first.`;
 }
 
 async function isBarred(path: string): Promise<boolean> {

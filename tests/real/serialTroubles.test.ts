@@ -37,7 +37,7 @@ describe('a second kilter on one port', () => {
     const first = open(pair.path);
     await until(() => first.sink.is('open'), 'the first has it');
     const second = open(pair.path);
-    await says(second.sink, /in use by another program/);
+    await says(second.sink, new RegExp(`in use by another program: .*process ${process.pid}`));
     await pair.send('\n1.5\n2.5\n');
     await until(() => first.sink.readings.length === 2, 'the first reads');
     expect(second.sink.readings).toEqual([]);
@@ -46,6 +46,19 @@ describe('a second kilter on one port', () => {
     await pair.send('\n3.5\n');
     await until(() => second.sink.readings.length === 1, 'the second reads');
     expect([first.sink.values(), second.sink.values()]).toEqual([[1.5, 2.5], [3.5]]);
+  });
+});
+
+describe('an attempt at a port in use', () => {
+  it('leaves the settings of its line as they are', async () => {
+    const first = open(pair.path);
+    const flags = (): string => spawnSync('stty', ['-F', pair.path, '-a'], { encoding: 'utf8' }).stdout;
+    await until(() => first.sink.is('open') && / -ignpar\b/.test(flags()), 'the first has set up the line');
+    const before = flags();
+    const second = open(pair.path, { baudRate: 9600, dataBits: 7, parity: 'even' });
+    await says(second.sink, /in use/);
+    await second.source.stop();
+    expect(flags()).toBe(before);
   });
 });
 
