@@ -308,7 +308,7 @@ export class AlarmLog {
     if (this.recovery) clearTimeout(this.recovery);
     if (left > 0) {
       const why = this.cause === null ? '' : ` ${this.cause.slice(0, this.cause.indexOf('. ') + 1)}`;
-      this.options.onTrouble(`${left} records could not be written to the alarm log before the end, and are lost.${why}`);
+      this.options.onTrouble(`${left === 1 ? 'One record' : `${left} records`} could not be written to the alarm log before the end: lost.${why}`);
     }
     if (this.pumping) return; // a call of the system hangs: the file and the lock go with the process
     this.file.drop();
