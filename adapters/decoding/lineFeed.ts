@@ -6,7 +6,7 @@ import { compileDecoder, type LineDecoder } from './lineDecoder.js';
 const SAMPLE = 120; // bytes of a refused line handed on
 
 /** What hears of whole lines beside the sink, for a judgement of the transport. */
-export interface LineWatch {
+interface LineWatch {
   good(length: number): void;
   refused(bytes: Buffer, start: number, end: number): void;
 }

@@ -71,7 +71,7 @@ export function scanNumber(bytes: Uint8Array, start: number, end: number, out: F
  * The reading that a number stands for: the SCPI stand-ins 9.91E37 (not-a-number) and ±9.9E37 and beyond (over range)
  * become NaN and ±Infinity; every other number is itself.
  */
-export function reading(value: number): number {
+function reading(value: number): number {
   if (Math.abs(value) < SCPI_INFINITY - SCPI_SLACK) return value;
   if (Math.abs(value - SCPI_NAN) <= SCPI_SLACK) return NaN;
   return value > 0 ? Infinity : value < 0 ? -Infinity : NaN;

@@ -4,9 +4,9 @@ const EPOCH = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d{1,2})?$/;
 const MONTHS = [31, 28, 31, 30, 31, 30, 31, 31, 30, 31, 30, 31];
 
 /** From this magnitude on an epoch number counts milliseconds (1e11 ms is March 1973, 1e11 s the year 5138). */
-export const MILLISECONDS_FROM = 1e11;
+const MILLISECONDS_FROM = 1e11;
 /** From this magnitude on it is no time at all: it may be microseconds or nanoseconds, which are not guessed at. */
-export const NO_TIME_FROM = 1e14;
+const NO_TIME_FROM = 1e14;
 
 /**
  * A time as devices, brokers and recordings write it, in milliseconds since 1970-01-01T00:00:00Z, with fractions of a

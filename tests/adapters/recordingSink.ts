@@ -1,7 +1,7 @@
 import { setTimeout as sleep } from 'node:timers/promises';
 import type { Fault, Sink, SourcePhase } from '../../adapters/source.js';
 
-export interface Delivered {
+interface Delivered {
   readonly slot: number;
   readonly time: number;
   readonly value: number;

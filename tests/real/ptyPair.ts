@@ -1,9 +1,8 @@
 import { spawn, type ChildProcess } from 'node:child_process';
-import { existsSync, mkdtempSync, rmSync } from 'node:fs';
+import { constants, existsSync, mkdtempSync, rmSync } from 'node:fs';
 import { open, type FileHandle } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { constants } from 'node:fs';
 import { until } from '../adapters/recordingSink.js';
 
 /**
@@ -40,13 +39,13 @@ export class PtyPair {
   async vanish(): Promise<void> {
     const { socat, end } = this;
     this.socat = this.end = null;
+    rmSync(this.path, { force: true }); // first: a dangling name may lead to the next terminal of another program
     if (socat) {
       const gone = new Promise((resolve) => socat.once('exit', resolve));
       socat.kill('SIGKILL');
       await gone;
     }
     await end?.close().catch(() => undefined);
-    rmSync(this.path, { force: true });
     rmSync(this.far, { force: true });
   }
 

@@ -5,7 +5,9 @@ import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import type { SerialOptions } from '../../adapters/options.js';
 import { serialSource } from '../../adapters/serial/source.js';
+import { whyNotOpen } from '../../adapters/serial/trouble.js';
 import type { Source } from '../../adapters/source.js';
+import { clean } from '../../src/text/clean.js';
 import { RecordingSink, until } from '../adapters/recordingSink.js';
 import { PtyPair } from './ptyPair.js';
 import { onPort, wantedNumber } from './serialOptions.js';
@@ -79,6 +81,29 @@ describe('a path that is no serial line', () => {
   it('is told to be another device', async () => {
     const { sink } = open('/dev/null');
     await says(sink, /not a serial line/);
+  });
+});
+
+describe('the sentence for a port that does not open', () => {
+  // The texts are serialport's own (bindings-cpp, serialport_unix.cpp); not all of them can be brought about at a test.
+  it.each([
+    ['Error: Permission denied, cannot open', /may not be read and written by this user\. .*usermod -aG dialout/],
+    ['Error Resource temporarily unavailable Cannot lock port', /in use by another program/],
+    ['Error: Device or resource busy, cannot open', /in use by another program/],
+    ['Error: Inappropriate ioctl for device, cannot open', /not a serial line/],
+    ['Error: Invalid argument || while setting custom baud rate of 7', /does not take these settings.*Check baudRate/],
+    ['Error: Input/output error, cannot open', /does not answer.*Check the plug/],
+    ['Error: something new\u001b[2J', /did not open: .*something new/],
+  ])('%s', async (said, sentence) => {
+    const why = await whyNotOpen('/dev/null', new Error(said));
+    expect(why).toMatch(sentence);
+    expect(why).toBe(clean(why, 1000));
+  });
+
+  it('is fit for a screen whatever the path', async () => {
+    const why = await whyNotOpen('/dev/\u001b[2J\u202ex', new Error('Error: No such file or directory'));
+    expect(why).toMatch(/^There is no port/);
+    expect(why).toBe(clean(why, 1000));
   });
 });
 
