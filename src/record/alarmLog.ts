@@ -1,36 +1,21 @@
+import type { AlarmLogOptions } from './alarmLogOptions.js';
+import { Alert } from './alert.js';
 import { Backlog, type Waiting } from './backlog.js';
 import { Ballast, BALLAST } from './ballast.js';
 import { join, ORIGIN, seal, type Sealed } from './chain.js';
-import { realDisk, type Disk } from './disk.js';
+import { realDisk } from './disk.js';
 import { takeLock, type Lock } from './lock.js';
 import { LogFile, Vanished } from './logFile.js';
 import { makeFoldersAbove, placeOf } from './place.js';
+import { Retry } from './retry.js';
 import { asUserError, describe, isFull, isTooLarge } from './trouble.js';
-
-export interface AlarmLogOptions {
-  /** Size in bytes beyond which the file is rotated; only a single line that is longer makes a larger file. */
-  readonly maxBytes: number;
-  /** Told once, in a sentence with what to do, when records cannot reach the disk; null when they do again. */
-  readonly onTrouble: (sentence: string | null) => void;
-  /** Told what was found or happened and needs no action at once. */
-  readonly onNote: (sentence: string) => void;
-  /** The first record of this process: `{event: 'opened', time, version, stand, ...}`. `tornBytes` and `from` are added where they apply. */
-  readonly opening?: object;
-  /** Bytes of records kept in memory while the disk fails; default 64 MiB. New ones beyond are dropped, counted, and the count logged. */
-  readonly maxBacklogBytes?: number;
-  /** Bytes of the reserve beside the log; default 64 KiB; 0: none. */
-  readonly ballastBytes?: number;
-  /** Wait before the first retry in ms, doubled for each further one up to five times as long; default 1000. */
-  readonly retryAfter?: number;
-  /** Longest that `close` goes on in ms when nothing reaches the disk; default 800. */
-  readonly closeWithin?: number;
-  readonly now?: () => number;
-  readonly disk?: Disk;
-}
 
 const BATCH = 1 << 20; // bytes in one write
 const BACKLOG = 64 << 20;
+const RETRY_AFTER = 1000; // ms, as those below
 const SLOWEST = 5; // times the first wait
+const RECOVER_AFTER = 5000;
+const TURN_AGAIN = 60_000;
 const CLOSE_WITHIN = 800;
 const CLOSE_RETRY = 50;
 
@@ -42,6 +27,8 @@ const CLOSE_RETRY = 50;
 export class AlarmLog {
   private readonly backlog: Backlog;
   private readonly ballast: Ballast;
+  private readonly alert: Alert;
+  private readonly retry: Retry;
   /** Records that go before those of the backlog: what joins a new file to the one before, and the opening one. */
   private continued: Sealed | null = null;
   private opened: Sealed | null = null;
@@ -50,18 +37,14 @@ export class AlarmLog {
   private waiters: { readonly upTo: number; readonly resolve: () => void }[] = [];
   private pumping: Promise<void> | null = null;
   private making: Promise<unknown> = Promise.resolve();
-  private retry: NodeJS.Timeout | null = null;
   private recovery: NodeJS.Timeout | null = null;
-  private delay: number;
   private most = BATCH; // bytes of the next write: less while the disk is full
   private tried = 0; // records in the last write, and their bytes
   private triedBytes = 0;
   private progressAt = 0;
-  private cause: string | null = null;
-  private said: string | null = null;
-  private reserveGone = false;
   private vanishedBefore = false;
   private turnWanted = false;
+  private turnAgainAt = 0; // a rotation that failed must not hold up alarms
   private hasOpened = false;
   private isFresh = false; // the file holds no record of the backlog yet
   private closing: Promise<void> | null = null;
@@ -74,7 +57,8 @@ export class AlarmLog {
   ) {
     this.backlog = new Backlog(options.maxBacklogBytes ?? BACKLOG, now);
     this.ballast = new Ballast(file.path, options.ballastBytes ?? BALLAST);
-    this.delay = this.firstDelay;
+    this.alert = new Alert(options.onTrouble);
+    this.retry = new Retry(options.retryAfter ?? RETRY_AFTER, SLOWEST);
   }
 
   /**
@@ -113,7 +97,7 @@ export class AlarmLog {
    */
   append(record: object, onDurable: () => void): void {
     if (this.closing) throw new Error('The alarm log is closed.');
-    if (!this.backlog.add(seal(record), onDurable)) this.say(this.cause ?? 'The disk takes alarms more slowly than they come.');
+    if (!this.backlog.add(seal(record), onDurable)) this.say(this.alert.cause ?? 'The disk takes alarms more slowly than they come.');
     this.wake();
   }
 
@@ -135,10 +119,6 @@ export class AlarmLog {
   close(): Promise<void> {
     this.closing ??= this.finish();
     return this.closing;
-  }
-
-  private get firstDelay(): number {
-    return this.options.retryAfter ?? 1000;
   }
 
   private begin(): void {
@@ -164,7 +144,7 @@ export class AlarmLog {
   }
 
   private wake(): void {
-    if (this.retry || this.pumping) return;
+    if (this.retry.isArmed || this.pumping) return;
     this.pumping = this.pump().finally(() => {
       this.pumping = null;
     });
@@ -189,10 +169,10 @@ export class AlarmLog {
     const headers = [this.continued, this.opened].filter((header) => header !== null);
     const lead = headers.reduce((sum, { bytes }) => sum + bytes, 0);
     const room = this.options.maxBytes - file.end;
-    const isNew = file.end === 0 || this.isFresh;
+    const mayTurn = performance.now() >= this.turnAgainAt;
     const next = lead || (backlog.peek(0, 1)[0]?.record.bytes ?? 0);
-    if (!isNew && next > room) return this.turn();
-    const batch = backlog.peek(Math.min(this.most, room) - lead, lead > 0 ? 0 : 1);
+    if (mayTurn && next > room && file.end > 0 && !this.isFresh) return this.turn();
+    const batch = backlog.peek((mayTurn ? Math.min(this.most, room) : this.most) - lead, lead > 0 ? 0 : 1);
     this.tried = headers.length + batch.length;
     this.triedBytes = batch.reduce((sum, { record }) => sum + record.bytes, lead);
     if (this.tried > 0) await this.write(headers, batch);
@@ -216,11 +196,11 @@ export class AlarmLog {
     this.done += batch.length;
     for (const { onDurable } of batch) callSafely(onDurable);
     this.answer();
-    this.delay = this.firstDelay;
+    this.retry.reset();
     this.most = Math.min(this.most * 2, BATCH);
     this.progressAt = performance.now();
     this.vanishedBefore = false;
-    if (this.said !== null) await this.recover();
+    if (this.alert.stands) await this.recover();
   }
 
   private answer(): void {
@@ -234,9 +214,17 @@ export class AlarmLog {
   /** Rotates, or follows a rotation from outside. */
   private async turn(): Promise<void> {
     const { file } = this;
-    if (file.end > 0 && !(await file.isMoved())) await file.moveAway();
-    this.goOn(await file.reopen());
     this.turnWanted = false;
+    if (file.end > 0 && !(await file.isMoved())) {
+      try {
+        await file.moveAway();
+      } catch (error) {
+        this.turnAgainAt = performance.now() + TURN_AGAIN;
+        this.options.onNote(`The alarm log cannot be rotated and goes on growing. ${describe(error, file.path)}`);
+        return;
+      }
+    }
+    this.goOn(await file.reopen());
   }
 
   private goOn(from: string | null): void {
@@ -253,7 +241,6 @@ export class AlarmLog {
       return true;
     }
     if (isFull(error) && ballast.release()) {
-      this.reserveGone = true;
       this.say(`${describe(error, file.path)} The reserve beside it was released, so that alarms still get through for a while.`);
       return true;
     }
@@ -263,36 +250,25 @@ export class AlarmLog {
     }
     if (isTooLarge(error) && !this.isFresh) this.turnWanted = true;
     this.say(`${describe(error, file.path)} Alarms wait in memory and are written as soon as that is possible.`);
-    this.retry = setTimeout(() => {
-      this.retry = null;
-      this.wake();
-    }, this.delay);
-    this.delay = Math.min(this.delay * 2, this.firstDelay * SLOWEST);
+    this.retry.arm(() => this.wake());
     return false;
   }
 
   private say(cause: string): void {
-    this.cause = cause;
-    const sentence = this.backlog.lost > 0 ? `${cause} The memory for waiting alarms is used up: new ones are dropped and counted.` : cause;
-    if (this.said === sentence) return;
-    this.said = sentence;
-    this.options.onTrouble(sentence);
+    this.alert.say(cause, this.backlog.lost > 0);
   }
 
-  /** After a write that succeeded: all is well once nothing more is dropped and the reserve stands again. */
+  /** After a write that succeeded: all is well once nothing more is dropped and a reserve that was given up stands again. */
   private async recover(): Promise<void> {
     if (this.backlog.lost > 0) return;
-    const stands = await this.ballast.make();
-    if (this.reserveGone && !stands) {
-      this.recovery ??= setTimeout(() => {
-        this.recovery = null;
-        if (!this.retry && !this.closing && this.said !== null) void this.recover();
-      }, this.firstDelay * SLOWEST).unref();
+    if ((await this.ballast.make()) || !this.ballast.isGivenUp) {
+      this.alert.withdraw();
       return;
     }
-    this.reserveGone = false;
-    this.cause = this.said = null;
-    this.options.onTrouble(null);
+    this.recovery ??= setTimeout(() => {
+      this.recovery = null;
+      if (!this.retry.isArmed && !this.closing && this.alert.stands) void this.recover();
+    }, RECOVER_AFTER).unref();
   }
 
   private async finish(): Promise<void> {
@@ -304,12 +280,9 @@ export class AlarmLog {
       await this.flush();
     }
     if (this.pumping) await within(this.closeWithin / 10, this.pumping);
-    if (this.retry) clearTimeout(this.retry);
+    this.retry.disarm();
     if (this.recovery) clearTimeout(this.recovery);
-    if (left > 0) {
-      const why = this.cause === null ? '' : ` ${this.cause.slice(0, this.cause.indexOf('. ') + 1)}`;
-      this.options.onTrouble(`${left === 1 ? 'One record' : `${left} records`} could not be written to the alarm log before the end: lost.${why}`);
-    }
+    if (left > 0) this.alert.sayLost(left);
     if (this.pumping) return; // a call of the system hangs: the file and the lock go with the process
     this.file.drop();
     this.lock?.release();
@@ -323,8 +296,7 @@ export class AlarmLog {
   private async flush(): Promise<void> {
     const left = () => this.progressAt + this.closeWithin * 0.9 - performance.now();
     for (;;) {
-      if (this.retry) clearTimeout(this.retry);
-      this.retry = null;
+      this.retry.disarm();
       this.wake();
       await within(left(), Promise.all([this.pumping, this.making]));
       if (!this.hasWork || left() <= 0) return;

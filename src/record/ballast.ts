@@ -14,6 +14,8 @@ const MARGIN = 2; // as much again must be free before the reserve is made, or m
  */
 export class Ballast {
   private readonly path: string;
+  /** Whether it was given up and has not been made again. */
+  isGivenUp = false;
 
   constructor(
     log: string,
@@ -22,7 +24,7 @@ export class Ballast {
     this.path = `${log}.ballast`;
   }
 
-  get held(): boolean {
+  private get isHeld(): boolean {
     return existsSync(this.path);
   }
 
@@ -30,6 +32,7 @@ export class Ballast {
   release(): boolean {
     try {
       unlinkSync(this.path);
+      this.isGivenUp = true;
       return true;
     } catch {
       return false;
@@ -38,7 +41,7 @@ export class Ballast {
 
   /** Makes the reserve where it is missing and there is room. @returns whether it stands */
   async make(): Promise<boolean> {
-    if (this.bytes === 0 || this.held) return true;
+    if (this.bytes === 0 || this.isHeld) return true;
     try {
       const { bavail, bsize } = await statfs(dirname(this.path));
       if (bavail * bsize < MARGIN * this.bytes) return false;
@@ -50,6 +53,7 @@ export class Ballast {
       } finally {
         await file.close();
       }
+      this.isGivenUp = false;
       return true;
     } catch {
       await unlink(this.path).catch(() => undefined);

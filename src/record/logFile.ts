@@ -1,12 +1,13 @@
-import { closeSync, constants, existsSync, fchmodSync, fdatasyncSync, fstatSync, fsyncSync, ftruncateSync, openSync, readlinkSync, readSync, renameSync, writeSync, type Stats } from 'node:fs';
-import { open, rename, stat, type FileHandle } from 'node:fs/promises';
+import { closeSync, fstatSync, ftruncateSync, openSync, readlinkSync, type Stats } from 'node:fs';
+import { rename, stat } from 'node:fs/promises';
 import { basename, dirname } from 'node:path';
 import { clean } from '../text/clean.js';
 import { UserError } from '../text/errors.js';
-import { syncFolder, syncFolderNow, type Disk } from './disk.js';
-import { nextRotatedName, rotatedFiles, stamp } from './logFiles.js';
-import { makeFoldersAbove } from './place.js';
+import { syncFolder, type Disk } from './disk.js';
+import { createLog, openLog } from './logDescriptor.js';
+import { nextRotatedName, rotatedFiles } from './logFiles.js';
 import { readTail } from './tail.js';
+import { setTornEndAside } from './tornEnd.js';
 
 /** What an opened log's file held. */
 export interface Found {
@@ -22,8 +23,6 @@ export interface Found {
 export class Vanished extends Error {
   override readonly name = 'Vanished';
 }
-
-const FLAGS = constants.O_RDWR | constants.O_APPEND | constants.O_NOFOLLOW;
 
 /**
  * The file under a log: it ends at a record's boundary at all times except within a `commit`. After a failure
@@ -61,7 +60,7 @@ export class LogFile {
    */
   open(): Found {
     this.drop();
-    const fd = this.openDescriptor();
+    const fd = openLog(this.path);
     try {
       const status = fstatSync(fd);
       const tail = readTail(fd, status.size);
@@ -72,7 +71,10 @@ export class LogFile {
         );
       }
       const tornBytes = status.size - tail.end;
-      if (tornBytes > 0) this.setAside(fd, tail.end, tornBytes);
+      if (tornBytes > 0) {
+        const aside = basename(setTornEndAside(this.path, fd, tail.end, status.size, this.now()));
+        this.onNote(`${clean(this.path, 300)} ended in a torn line of ${tornBytes} bytes, as after a loss of power. They lie in ${clean(aside, 300)}; every whole line is kept.`);
+      }
       if (!tail.chained) {
         this.onNote(`The chain of ${clean(this.path, 300)} is broken near its end: a line was changed or removed. It goes on from its last line; kilter verify shows where it broke.`);
       }
@@ -92,8 +94,8 @@ export class LogFile {
    * @returns the name of the file that the chain comes from where this is another file than before, else null
    */
   async reopen(): Promise<string | null> {
-    await this.createIfMissing();
-    const fd = this.openDescriptor();
+    await createLog(this.path);
+    const fd = openLog(this.path);
     let status: Stats;
     let isSame: boolean;
     try {
@@ -179,37 +181,6 @@ export class LogFile {
     }
   }
 
-  /** As `openDescriptor` does at the start, but without holding up the readings while the disk works. */
-  private async createIfMissing(): Promise<void> {
-    makeFoldersAbove(this.path);
-    let handle: FileHandle;
-    try {
-      handle = await open(this.path, 'wx', 0o640);
-    } catch (error) {
-      if ((error as NodeJS.ErrnoException).code === 'EEXIST') return;
-      throw error;
-    }
-    try {
-      await handle.chmod(0o640);
-    } finally {
-      await handle.close();
-    }
-    await syncFolder(dirname(this.path));
-  }
-
-  private openDescriptor(): number {
-    try {
-      return openSync(this.path, FLAGS);
-    } catch (error) {
-      if ((error as NodeJS.ErrnoException).code !== 'ENOENT') throw error;
-    }
-    makeFoldersAbove(this.path);
-    const fd = openSync(this.path, FLAGS | constants.O_CREAT | constants.O_EXCL, 0o640);
-    fchmodSync(fd, 0o640);
-    syncFolderNow(dirname(this.path));
-    return fd;
-  }
-
   /** The name that the open file has now, whoever renamed it (proc(5), fd); the log's own where the system does not tell. */
   private currentName(fd: number): string {
     if (this.movedTo !== null) return this.movedTo;
@@ -223,7 +194,7 @@ export class LogFile {
   private lastRotated(): Pick<Found, 'hash' | 'from'> {
     const file = rotatedFiles(this.path).at(-1);
     if (file === undefined) return { hash: null, from: null };
-    const fd = openSync(file, constants.O_RDONLY);
+    const fd = openSync(file, 'r');
     try {
       const tail = readTail(fd, fstatSync(fd).size);
       if (tail?.hash) return { hash: tail.hash, from: basename(file) };
@@ -232,28 +203,6 @@ export class LogFile {
     } finally {
       closeSync(fd);
     }
-  }
-
-  private setAside(fd: number, end: number, bytes: number): void {
-    const torn = Buffer.allocUnsafe(bytes);
-    for (let got = 0; got < bytes; ) got += readSync(fd, torn, got, bytes - got, end + got);
-    const unfinished = `${this.path}.torn`;
-    const aside = openSync(unfinished, constants.O_WRONLY | constants.O_CREAT | constants.O_TRUNC | constants.O_NOFOLLOW, 0o640);
-    try {
-      fchmodSync(aside, 0o640);
-      for (let put = 0; put < bytes; ) put += writeSync(aside, torn, put);
-      fsyncSync(aside);
-    } finally {
-      closeSync(aside);
-    }
-    let time = this.now();
-    while (existsSync(`${this.path}.torn-${stamp(time)}`)) time++;
-    const name = `${this.path}.torn-${stamp(time)}`;
-    renameSync(unfinished, name);
-    syncFolderNow(dirname(this.path));
-    ftruncateSync(fd, end);
-    fdatasyncSync(fd);
-    this.onNote(`${clean(this.path, 300)} ended in a torn line of ${bytes} bytes, as after a loss of power. They lie in ${clean(basename(name), 300)}; every whole line is kept.`);
   }
 
   private noteShrunk(size: number): void {

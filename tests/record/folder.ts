@@ -2,7 +2,8 @@ import { mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { onTestFinished } from 'vitest';
-import { AlarmLog, type AlarmLogOptions } from '../../src/record/alarmLog.js';
+import { AlarmLog } from '../../src/record/alarmLog.js';
+import type { AlarmLogOptions } from '../../src/record/alarmLogOptions.js';
 
 /** A folder of the test's own, gone after it. */
 export function folder(): string {

@@ -99,6 +99,20 @@ describe('rotation on demand', () => {
   });
 });
 
+it('a rotation that fails is said and holds up no alarm', async () => {
+  const file = join(folder(), `${'a'.repeat(236)}.log`); // the time behind it makes a name too long for any file system
+  const { log, notes, troubles } = opened(file, { maxBytes: 500 });
+  for (let index = 0; index < 20; index++) log.append({ event: 'raised', index }, ignore);
+  await log.durable();
+  log.rotate();
+  await log.close();
+  expect(indices([file])).toEqual(upTo(20));
+  expect(await verifyChain([file])).toMatchObject({ holds: true });
+  expect(notes[0]).toContain('cannot be rotated and goes on growing');
+  expect(notes.length).toBeLessThanOrEqual(2);
+  expect(troubles).toEqual([]);
+});
+
 describe('rotation from outside', () => {
   it.each([['and nothing put in its place', false], ['and an empty file put in its place', true]])('renamed %s', async (_, creates) => {
     const file = join(folder(), 'alarms.log');
