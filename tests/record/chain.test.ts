@@ -83,6 +83,13 @@ describe('tampering is found', () => {
   });
 });
 
+it('bytes that are no UTF-8 are found, though they read like the sign for such bytes', async () => {
+  const { line } = link({ event: 'raised', sentence: '\ufffd' }, ORIGIN);
+  const [before, after] = line.split('\ufffd');
+  const result = await verify(Buffer.concat([Buffer.from(before!), Buffer.of(0xff), Buffer.from(after! + '\n')]));
+  expect(result).toMatchObject({ holds: false, sentence: expect.stringContaining('canonical') as string });
+});
+
 it('hostile bytes never reach the sentence', async () => {
   const result = await verify('\u001b]0;owned\u0007\u001b[2J\u202e' + 'A'.repeat(5000) + '\n');
   expect(result.holds).toBe(false);
