@@ -1,0 +1,85 @@
+import { upperTail } from '../stats/normal.js';
+
+const FEWEST = 4; // repeats that are never too few to be chance
+const STEPS = 20; // steps between unlike readings after which the least of them stands for the resolution
+
+/**
+ * Finds a value that has repeated longer than noise and resolution make credible. A reading of the band falls on the same
+ * rounded value as the one before with probability at most p = 2 Phi(r / 2 sigma) - 1, the share of the most likely value
+ * when the instrument rounds to steps of r; m repeats in a row have at most p^m.
+ */
+export class Frozen {
+  /** last value, repeats of it, least step seen, steps seen, repeats at which it is no longer credible */
+  private readonly state = Float64Array.of(NaN, 0, Infinity, 0, Infinity);
+  private sigma = 0;
+
+  /**
+   * @param resolution of the instrument; null: the least step between readings stands for it, once 20 steps were seen
+   * @param odds below which a run of repeats counts as frozen
+   */
+  constructor(
+    private readonly resolution: number | null,
+    private readonly odds: number,
+  ) {}
+
+  /** To be called when the band is known. */
+  judgeBy(sigma: number): void {
+    this.sigma = sigma;
+    this.reckon();
+  }
+
+  /** @returns whether the value counts as frozen at this reading */
+  step(value: number): boolean {
+    const s = this.state;
+    const last = s[0]!;
+    if (value === last) return ++s[1]! >= s[4]!;
+    s[0] = value;
+    s[1] = 0;
+    const step = value > last ? value - last : last - value;
+    if (step === step) {
+      s[3]!++;
+      if (step < s[2]! || s[3] === STEPS) {
+        if (step < s[2]!) s[2] = step;
+        this.reckon();
+      }
+    }
+    return false;
+  }
+
+  get repeats(): number {
+    return this.state[1]!;
+  }
+
+  /** The step by which repeats are judged; null while it is not known. */
+  get smallestStep(): number | null {
+    if (this.resolution !== null) return this.resolution;
+    return this.state[3]! >= STEPS ? this.state[2]! : null;
+  }
+
+  /** Natural logarithm of the probability of one repeat; NaN while nothing can be said. */
+  get logChance(): number {
+    const step = this.smallestStep;
+    if (step === null || !(this.sigma > 0)) return NaN;
+    return logChance(step, this.sigma);
+  }
+
+  private reckon(): void {
+    this.state[4] = repeatsNeeded(this.logChance, this.odds);
+  }
+
+  arrays(): Readonly<Record<string, Float64Array>> {
+    return { frozen: this.state };
+  }
+}
+
+/** ln(2 Phi(r / 2 sigma) - 1). */
+export function logChance(resolution: number, sigma: number): number {
+  const outside = 2 * upperTail(resolution / (2 * sigma));
+  return outside < 0.5 ? Math.log1p(-outside) : Math.log(1 - outside);
+}
+
+/** Repeats m, at least 4, at which p^m falls below the odds; infinite while p is not known. */
+export function repeatsNeeded(lnChance: number, odds: number): number {
+  if (lnChance !== lnChance || lnChance === 0) return Infinity;
+  return Math.max(FEWEST, Math.ceil(Math.log(odds) / lnChance));
+}

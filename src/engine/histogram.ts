@@ -1,0 +1,15 @@
+const PER_SIGMA = 4;
+const REACH = 6;
+const BINS = 2 * REACH * PER_SIGMA;
+
+/** Readings counted by their deviation in quarter sigmas of the band, from -6 to 6, with a bin below and one above. */
+export class Histogram {
+  /** counts[0] lies below -6 sigma, counts[1] from -6 to -5.75 ..., the last above 6. A full count stays full. */
+  readonly counts = new Uint32Array(BINS + 2);
+
+  add(z: number): void {
+    const at = z >= REACH ? BINS + 1 : z < -REACH ? 0 : ((z + REACH) * PER_SIGMA + 1) | 0;
+    const count = this.counts[at]!;
+    if (count < 0xffffffff) this.counts[at] = count + 1;
+  }
+}
