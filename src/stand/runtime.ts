@@ -4,7 +4,7 @@ import type { AlarmCleared, AlarmRaised, BandLearned, EngineEvent } from '../eng
 import type { AlarmLog } from '../record/alarmLog.js';
 import { toWire } from '../record/wire.js';
 import { clean } from '../text/clean.js';
-import { Clock } from './clock.js';
+import type { Clock } from './clock.js';
 import { History } from './history.js';
 import { SourceState } from './sourceState.js';
 import type { ChannelConfig } from './types.js';
