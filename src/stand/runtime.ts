@@ -6,6 +6,7 @@ import { toWire } from '../record/wire.js';
 import { clean } from '../text/clean.js';
 import type { Clock } from './clock.js';
 import { History } from './history.js';
+import { silenceBefore } from './silence.js';
 import { SourceState } from './sourceState.js';
 import type { ChannelConfig } from './types.js';
 
@@ -164,15 +165,4 @@ export class Runtime {
       now: () => clock.now(),
     };
   }
-}
-
-/**
- * The time at which a channel became silent before a reading at `time`, by the readings' own times, or null.
- * Used where readings bring their time (recordings), so that a silence is found at the same moment on every run.
- */
-export function silenceBefore(channel: Channel, time: number): number | null {
-  const { silentAfter } = channel.spec;
-  const last = channel.lastTime;
-  if (silentAfter === null || last === null) return null;
-  return time - last > silentAfter ? last + silentAfter + 1 : null;
 }

@@ -1,0 +1,68 @@
+import { createReadStream } from 'node:fs';
+import { open } from 'node:fs/promises';
+import { createGunzip } from 'node:zlib';
+import { clean } from '../../src/text/clean.js';
+import { UserError } from '../../src/text/errors.js';
+
+const CHUNK = 1 << 20;
+
+/** A recording's bytes in chunks, unpacked where they are gzip, and how far the file has been read. */
+export interface RecordingBytes {
+  readonly chunks: AsyncIterable<Buffer>;
+  /** Share of the file that was read, 0 to 1. */
+  fraction(): number;
+  /** A gzip file that stops in the middle: what was whole has been given, and this says so; else null. */
+  torn(): string | null;
+}
+
+/**
+ * Opens a recording. Whether it is gzip is told by its first bytes, not by its name.
+ * @throws UserError where there is no such file, it may not be read, or it is no text
+ */
+export async function recordingBytes(path: string): Promise<RecordingBytes> {
+  const name = clean(path, 200);
+  const { size, head } = await peek(path, name);
+  if (size === 0) throw new UserError(`The recording ${name} is empty.`);
+  if ((head[0] === 0xff && head[1] === 0xfe) || (head[0] === 0xfe && head[1] === 0xff))
+    throw new UserError(`The recording ${name} is written in UTF-16.`, 'Save it as UTF-8.');
+  const file = createReadStream(path, { highWaterMark: CHUNK });
+  const gzip = head[0] === 0x1f && head[1] === 0x8b;
+  let read = 0;
+  let torn: string | null = null;
+  file.on('data', (chunk) => (read += chunk.length));
+  async function* chunks(): AsyncGenerator<Buffer> {
+    const stream = gzip ? file.pipe(createGunzip({ chunkSize: CHUNK })) : file;
+    if (gzip) file.once('error', (error) => stream.destroy(error));
+    try {
+      for await (const chunk of stream) yield chunk as Buffer;
+    } catch (error) {
+      const { code, message } = error as NodeJS.ErrnoException;
+      if (code === 'Z_BUF_ERROR') torn = `${name} stops in the middle: what was whole has been read.`;
+      else if (code?.startsWith('Z_')) torn = `${name} is damaged from some place on (${clean(message, 60)}): what came before has been read.`;
+      else throw error;
+    } finally {
+      file.destroy();
+    }
+  }
+  return { chunks: chunks(), fraction: () => Math.min(1, read / size), torn: () => torn };
+}
+
+async function peek(path: string, name: string): Promise<{ size: number; head: Buffer }> {
+  try {
+    const file = await open(path, 'r');
+    try {
+      const { size } = await file.stat();
+      const head = Buffer.alloc(2);
+      await file.read(head, 0, 2, 0);
+      return { size, head };
+    } finally {
+      await file.close();
+    }
+  } catch (error) {
+    const { code } = error as NodeJS.ErrnoException;
+    if (code === 'ENOENT') throw new UserError(`There is no recording ${name}.`, 'Look at its path.');
+    if (code === 'EISDIR') throw new UserError(`${name} is a folder.`, 'Name a recording in it.');
+    if (code === 'EACCES') throw new UserError(`The recording ${name} may not be read by this user.`, 'Give it read permission (chmod).');
+    throw new UserError(`The recording ${name} cannot be read (${code ?? 'unknown reason'}).`);
+  }
+}

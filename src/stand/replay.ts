@@ -1,0 +1,72 @@
+import { setImmediate as turn } from 'node:timers/promises';
+import { recordingBytes } from '../../adapters/recording/bytes.js';
+import { RecordingReader } from '../../adapters/recording/reader.js';
+import type { Fault, Wanted } from '../../adapters/source.js';
+import { Channel } from '../engine/channel.js';
+import type { EngineEvent } from '../engine/events.js';
+import type { ChannelSpec } from '../engine/spec.js';
+import { silenceBefore } from './silence.js';
+
+/** What a replay tells while it runs, in the order of the recording. */
+export interface ReplayListener {
+  onEvents(events: readonly EngineEvent[]): void;
+  /** After each reading has been through its channel; left out where nobody asks, as it costs. */
+  readonly onReading?: (channel: Channel, time: number) => void;
+  onFault(fault: Fault, sample: string): void;
+  onProgress(fraction: number): void;
+  /** Awaited between chunks: the reader of our output may need a pause. */
+  drained(): Promise<void> | null;
+}
+
+export interface Replayed {
+  readonly channels: readonly Channel[];
+  readonly readings: number;
+  /** The recording stopped in the middle (a torn gzip); else null. */
+  readonly torn: string | null;
+}
+
+/**
+ * A recording through the engine, as fast as it goes. A channel's column is the one that bears its name, else the one
+ * of its field. The same recording and specifications give the same events on every run: time comes from the recording.
+ * @param fields for each channel the field of the stand file, or null
+ * @throws UserError where the recording cannot be read or has none of the channels
+ */
+export async function replay(
+  path: string,
+  specs: readonly ChannelSpec[],
+  fields: readonly (string | null)[],
+  listener: ReplayListener,
+): Promise<Replayed> {
+  const channels = specs.map((spec) => new Channel(spec));
+  const wanted = specs.map(({ channel, every }, slot): Wanted => {
+    const field = fields[slot] ?? null;
+    // The channel's name comes first here, since recordings are kilter's own as often as an instrument's.
+    return { slot, channel: field ?? channel, field: channel, topic: null, value: null, time: null, sequence: null, every };
+  });
+  let readings = 0;
+  const { onReading } = listener;
+  const bytes = await recordingBytes(path);
+  const reader = new RecordingReader(
+    wanted,
+    {
+      reading: (slot, time, value) => {
+        const channel = channels[slot]!;
+        readings++;
+        const gap = silenceBefore(channel, time);
+        if (gap !== null) listener.onEvents(channel.tick(gap));
+        const events = channel.take(time, value);
+        if (events.length > 0) listener.onEvents(events);
+        if (onReading) onReading(channel, time);
+      },
+      fault: (fault, sample) => listener.onFault(fault, sample),
+    },
+    path,
+  );
+  for await (const chunk of bytes.chunks) {
+    reader.push(chunk);
+    listener.onProgress(bytes.fraction());
+    await (listener.drained() ?? turn());
+  }
+  reader.end();
+  return { channels, readings, torn: bytes.torn() };
+}
