@@ -65,6 +65,10 @@ export class CsvRows implements RowReader {
     let at = start;
     for (;;) {
       const byte = bytes[at]!;
+      if (byte > 0x2c && byte !== delimiter) {
+        at++; // digits, signs but plus, points: most bytes of a recording
+        continue;
+      }
       if (byte === delimiter) {
         if (cell <= last) {
           starts[cell] = from;

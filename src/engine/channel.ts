@@ -5,6 +5,7 @@ import { Baseline, predictionLimit } from './baseline.js';
 import { EvidenceRing } from './evidence.js';
 import type { AlarmRaised, EngineEvent } from './events.js';
 import { Frozen } from './frozen.js';
+import { HAND_FIELDS, INDEX, TIME, VALUE, Z } from './hand.js';
 import { Histogram } from './histogram.js';
 import { Patterns, RULE_BIT } from './patterns.js';
 import { RollingWindow } from './rollingWindow.js';
@@ -17,24 +18,22 @@ import { bandSentence, clearedSentence, raisedSentence } from './words.js';
 /** What a quiet reading gives: always this one, so that nothing is allocated. */
 const NONE: readonly EngineEvent[] = Object.freeze([]);
 
-// Places of the state in doubles.
-const INDEX = 0;
-const LAST_TIME = 1; // newest time of any reading
-const VALUE = 2;
-const Z = 3;
-const WATCH_BEGAN = 4; // first tick, for a channel of which nothing ever came
-const SILENT = 5; // 1 while a silence has been signalled and no reading came since
+// Further places of the state, after those of the reading at hand.
+const LAST_TIME = HAND_FIELDS; // newest time of any reading
+const WATCH_BEGAN = HAND_FIELDS + 1; // first tick, for a channel of which nothing ever came
+const SILENT = HAND_FIELDS + 2; // 1 while a silence has been signalled and no reading came since
 
 /**
  * One channel from reading to signal to alarm: a function of (state, reading) and (state, time) to (state, events).
  * Time is an input, in ms since the epoch. The same readings and ticks give the same events on every run.
  */
 export class Channel {
-  private readonly state = Float64Array.of(-1, NaN, NaN, NaN, NaN, 0);
+  /** value, z, time and index of the reading at hand; then newest time, begin of the watch, whether silent */
+  private readonly state = Float64Array.of(NaN, NaN, NaN, -1, NaN, NaN, 0);
   private readonly window: RollingWindow;
   private readonly patterns: Patterns;
   private readonly frozen: Frozen;
-  private readonly evidence = new EvidenceRing();
+  private readonly evidence: EvidenceRing;
   private readonly baseline: Baseline | null;
   private readonly ranged: boolean;
   private readonly rangeLow: number;
@@ -49,13 +48,15 @@ export class Channel {
   private sigma = NaN;
   private prediction = Infinity;
   /** Readings since the band was established, by quarter sigmas. */
-  readonly histogram = new Histogram();
+  readonly histogram: Histogram;
 
   constructor(readonly spec: ChannelSpec) {
     const { band, k, range, tolerance } = spec;
-    this.window = new RollingWindow(spec.window);
-    this.patterns = new Patterns(spec.rules, k / 3, spec.sideRun);
-    this.frozen = new Frozen(spec.resolution, spec.frozenOdds);
+    this.window = new RollingWindow(spec.window, this.state);
+    this.patterns = new Patterns(spec.rules, k / 3, spec.sideRun, this.state);
+    this.frozen = new Frozen(spec.resolution, spec.frozenOdds, this.state);
+    this.evidence = new EvidenceRing(this.state);
+    this.histogram = new Histogram(this.state);
     this.ranged = range !== null;
     [this.rangeLow, this.rangeHigh] = range ?? [-Infinity, Infinity];
     this.tolerated = tolerance !== null;
@@ -108,20 +109,21 @@ export class Channel {
    */
   take(time: number, value: number): readonly EngineEvent[] {
     const { state } = this;
-    const index = ++state[INDEX]!;
-    if (!(time <= state[LAST_TIME]!)) state[LAST_TIME] = time;
+    state[INDEX]!++;
     state[VALUE] = value;
-    this.evidence.push(index, time, value);
+    state[TIME] = time;
+    if (!(time <= state[LAST_TIME]!)) state[LAST_TIME] = time;
+    this.evidence.push();
     if (!(value >= this.rangeLow && value <= this.rangeHigh && value - value === 0)) return this.offScale(time, value);
-    this.window.push(value);
+    this.window.push();
     if (this.bandInForce === null) return this.settle(time, value);
 
     const z = (value - this.centre) / this.sigma;
     state[Z] = z;
-    this.histogram.add(z);
-    let fired = this.patterns.step(value, z);
+    this.histogram.add();
+    let fired = this.patterns.step();
     if (this.inconsistent && (z > this.prediction || z < -this.prediction)) fired |= RULE_BIT.inconsistent;
-    const frozen = this.spec.frozen && this.frozen.step(value);
+    const frozen = this.spec.frozen && this.frozen.step();
     const outside = value > this.toleranceHigh || value < this.toleranceLow;
     if (fired === 0 && !frozen && !outside && this.active.length === 0 && state[SILENT] === 0) return NONE;
     return this.report(time, value, z, fired, frozen, outside, false);
@@ -190,7 +192,7 @@ export class Channel {
     }
     if (fired !== 0)
       for (const rule of RULES)
-        if (fired & RULE_BIT[rule]) this.signal(events, rule, this.patterns.sideOf(rule, z ?? 0), time, value, z, 0);
+        if (fired & RULE_BIT[rule]) this.signal(events, rule, this.patterns.sideOf(rule), time, value, z, 0);
     if (frozen) this.signal(events, 'frozen', null, time, value, z, 0);
     if (outside) this.signal(events, 'tolerance', value > this.toleranceHigh ? 'high' : 'low', time, value, z, 0);
     if (offScale) this.signal(events, 'off-scale', value > this.rangeHigh ? 'high' : value < this.rangeLow ? 'low' : null, time, value, z, 0);
@@ -259,7 +261,7 @@ export class Channel {
       value: value !== null && Number.isFinite(value) ? value : null,
       z,
       odds,
-      evidence: { band: bandInForce, limits: this.limits(detector, silence), readings: this.evidence.list(index) },
+      evidence: { band: bandInForce, limits: this.limits(detector, silence), readings: this.evidence.list() },
       sentence: raisedSentence(spec, facts),
     };
   }

@@ -1,24 +1,31 @@
 import type { EvidenceReading } from './events.js';
+import { INDEX, TIME, VALUE } from './hand.js';
 
-/** Readings that evidence keeps: more than the longest pattern looks back. */
+/** Readings that evidence keeps: more than the longest pattern looks back. A power of two, so that a place is a mask and no division. */
 export const KEPT = 32;
+const PLACE = KEPT - 1;
 
 /** The newest readings of a channel as they came, with their times; those off the scale too. */
 export class EvidenceRing {
   private readonly values = new Float64Array(KEPT);
   private readonly times = new Float64Array(KEPT);
 
-  push(index: number, time: number, value: number): void {
-    const place = index % KEPT;
-    this.values[place] = value;
-    this.times[place] = time;
+  constructor(private readonly hand: Float64Array) {}
+
+  /** Keeps the reading at hand. */
+  push(): void {
+    const { hand } = this;
+    const place = hand[INDEX]! & PLACE;
+    this.values[place] = hand[VALUE]!;
+    this.times[place] = hand[TIME]!;
   }
 
-  /** @param newest index of the newest reading, -1 before the first. @returns oldest first */
-  list(newest: number): EvidenceReading[] {
+  /** The newest readings, oldest first. */
+  list(): EvidenceReading[] {
+    const newest = this.hand[INDEX]!;
     const readings: EvidenceReading[] = [];
     for (let index = Math.max(0, newest - KEPT + 1); index <= newest; index++) {
-      const place = index % KEPT;
+      const place = index & PLACE;
       readings.push({ index, time: this.times[place]!, value: this.values[place]! });
     }
     return readings;

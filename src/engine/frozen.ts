@@ -1,4 +1,5 @@
 import { upperTail } from '../stats/normal.js';
+import { VALUE } from './hand.js';
 
 const FEWEST = 4; // repeats that are never too few to be chance
 const STEPS = 20; // steps between unlike readings after which the least of them stands for the resolution
@@ -20,6 +21,7 @@ export class Frozen {
   constructor(
     private readonly resolution: number | null,
     private readonly odds: number,
+    private readonly hand: Float64Array,
   ) {}
 
   /** To be called when the band is known. */
@@ -28,22 +30,26 @@ export class Frozen {
     this.reckon();
   }
 
-  /** @returns whether the value counts as frozen at this reading */
-  step(value: number): boolean {
-    const s = this.state;
+  /** Takes the reading at hand. @returns whether its value counts as frozen */
+  step(): boolean {
+    const { state: s } = this;
+    const value = this.hand[VALUE]!;
     const last = s[0]!;
     if (value === last) return ++s[1]! >= s[4]!;
     s[0] = value;
     s[1] = 0;
-    const step = value > last ? value - last : last - value;
-    if (step === step) {
-      s[3]!++;
-      if (step < s[2]! || s[3] === STEPS) {
-        if (step < s[2]!) s[2] = step;
-        this.reckon();
-      }
-    }
+    if (this.resolution === null) this.measure(value > last ? value - last : last - value);
     return false;
+  }
+
+  /** Takes a step between unlike readings into the guess at the resolution. */
+  private measure(step: number): void {
+    const { state: s } = this;
+    if (!(step > 0)) return; // the first reading has none before it
+    s[3]!++;
+    if (step < s[2]!) s[2] = step;
+    else if (s[3] !== STEPS) return;
+    this.reckon();
   }
 
   get repeats(): number {

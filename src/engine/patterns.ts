@@ -1,20 +1,27 @@
-import { RULES, type Rule, type Side } from './rules.js';
+import { VALUE, Z } from './hand.js';
+import { RULES, SUPPLEMENTARY_RULES, type Rule, type Side } from './rules.js';
 
 // Places in the state.
-const HIGH2 = 0; // newest three readings beyond +2, newest in bit 0; and so on
-const LOW2 = 1;
-const HIGH1 = 2; // newest five
-const LOW1 = 3;
-const SIDE = 4; // readings in a row on one side: positive above the centre, negative below
-const RUN = 5; // readings in a row rising (positive) or falling (negative), the first included
-const ZIGZAG = 6; // readings in a row that alternate up and down, the first two included
-const WITHIN = 7;
-const OUTSIDE = 8;
-const SEEN = 9;
-const LENGTH = 10;
+const RECENT = 0; // which of the newest readings lay beyond a line: four shift registers in one word, see below
+const SIDE = 1; // readings in a row on one side: positive above the centre, negative below
+const RUN = 2; // readings in a row rising (positive) or falling (negative), the first included
+const ZIGZAG = 3; // readings in a row that alternate up and down, the first two included
+const WITHIN = 4;
+const OUTSIDE = 5;
+const SEEN = 6;
+const LENGTH = 7;
+
+// Bits of RECENT, the newest reading in the lowest bit of each register: three beyond +2, three beyond -2, five beyond +1, five beyond -1.
+const HIGH2 = 0;
+const LOW2 = 3;
+const HIGH1 = 6;
+const LOW1 = 11;
+const KEEP = 0b11110_11110_110_110; // after a shift by one: what has not left its register
 
 /** Bit of each rule in the mask that `step` returns. */
 export const RULE_BIT: Readonly<Record<Rule, number>> = Object.fromEntries(RULES.map((rule, i) => [rule, 1 << i])) as Record<Rule, number>;
+
+const SUPPLEMENTARY = SUPPLEMENTARY_RULES.reduce((mask, rule) => mask | RULE_BIT[rule], 0);
 
 // Whether two of three / four of five bits are set and the newest is among them.
 const TWO_OF_THREE = Uint8Array.from({ length: 8 }, (_, mask) => (mask & 1 && mask > 1 ? 1 : 0));
@@ -48,6 +55,7 @@ export class Patterns {
     rules: readonly Rule[],
     scale: number,
     private readonly sideRun: number,
+    private readonly hand: Float64Array,
   ) {
     this.one = scale;
     this.two = 2 * scale;
@@ -55,35 +63,36 @@ export class Patterns {
     this.enabled = rules.reduce((mask, rule) => mask | RULE_BIT[rule], 0);
   }
 
-  /**
-   * Takes one reading.
-   * @param value for the order of readings, so that a trend does not depend on the rounding of z
-   * @param z (value - centre) / sigma
-   * @returns the mask of enabled rules that signal; 0 where all is quiet
-   */
-  step(value: number, z: number): number {
-    const { state: s, one, two, three } = this;
+  /** Takes the reading at hand. @returns the mask of enabled rules that signal; 0 where all is quiet */
+  step(): number {
+    const { state: s, hand, one } = this;
+    const z = hand[Z]!;
     const far = z < 0 ? -z : z;
-    let fired = far > three ? 1 : 0;
-    s[HIGH2] = ((s[HIGH2]! << 1) | (z > two ? 1 : 0)) & 7;
-    s[LOW2] = ((s[LOW2]! << 1) | (z < -two ? 1 : 0)) & 7;
-    s[HIGH1] = ((s[HIGH1]! << 1) | (z > one ? 1 : 0)) & 31;
-    s[LOW1] = ((s[LOW1]! << 1) | (z < -one ? 1 : 0)) & 31;
+    let recent = (s[RECENT]! << 1) & KEEP;
+    let fired = 0;
     if (far > one) {
-      if (TWO_OF_THREE[s[HIGH2]]! | TWO_OF_THREE[s[LOW2]]!) fired |= 2;
-      if (FOUR_OF_FIVE[s[HIGH1]]! | FOUR_OF_FIVE[s[LOW1]]!) fired |= 4;
+      recent |= z > 0 ? 1 << HIGH1 : 1 << LOW1;
+      if (far > this.two) {
+        recent |= z > 0 ? 1 << HIGH2 : 1 << LOW2;
+        if (far > this.three) fired = 1;
+        if (TWO_OF_THREE[z > 0 ? (recent >> HIGH2) & 7 : (recent >> LOW2) & 7]) fired |= 2;
+      }
+      if (FOUR_OF_FIVE[z > 0 ? (recent >> HIGH1) & 31 : (recent >> LOW1) & 31]) fired |= 4;
     }
+    s[RECENT] = recent;
     const side = s[SIDE]!;
     const longer = z > 0 ? (side > 0 ? side + 1 : 1) : z < 0 ? (side < 0 ? side - 1 : -1) : 0;
     s[SIDE] = longer;
     const run = longer < 0 ? -longer : longer;
     if (run >= this.sideRun) fired |= 8;
-    if ((this.enabled & 0x1f0) !== 0) fired |= this.supplementary(value, far, run);
+    if ((this.enabled & SUPPLEMENTARY) !== 0) fired |= this.supplementary(far > one ? 1 : far < one ? -1 : 0, run);
     return fired & this.enabled;
   }
 
-  private supplementary(value: number, far: number, run: number): number {
-    const { state: s, before, one } = this;
+  /** @param zone 1: outside one sigma, -1: within, 0: exactly on the line */
+  private supplementary(zone: number, run: number): number {
+    const { state: s, before, hand } = this;
+    const value = hand[VALUE]!; // not z: the order of readings must not depend on its rounding
     let fired = run >= 9 ? 16 : 0;
     const last = before[0]!;
     before[0] = value;
@@ -101,15 +110,15 @@ export class Patterns {
     }
     if (s[RUN] >= 6 || s[RUN] <= -6) fired |= 32;
     if (s[ZIGZAG] >= 14) fired |= 64;
-    s[WITHIN] = far < one ? s[WITHIN]! + 1 : 0;
-    s[OUTSIDE] = far > one ? s[OUTSIDE]! + 1 : 0;
+    s[WITHIN] = zone < 0 ? s[WITHIN]! + 1 : 0;
+    s[OUTSIDE] = zone > 0 ? s[OUTSIDE]! + 1 : 0;
     if (s[WITHIN] >= 15) fired |= 128;
     if (s[OUTSIDE] >= 8) fired |= 256;
     return fired;
   }
 
   /** The side of a rule's pattern that holds now; null where it has none. */
-  sideOf(rule: Rule, z: number): Side | null {
+  sideOf(rule: Rule): Side | null {
     switch (rule) {
       case 'trend-of-6':
         return this.state[RUN]! > 0 ? 'high' : 'low';
@@ -118,13 +127,8 @@ export class Patterns {
       case 'eight-outside-1':
         return null;
       default:
-        return z > 0 ? 'high' : 'low';
+        return this.hand[Z]! > 0 ? 'high' : 'low';
     }
-  }
-
-  /** Readings in a row on one side of the centre. */
-  get run(): number {
-    return Math.abs(this.state[SIDE]!);
   }
 
   arrays(): Readonly<Record<string, Float64Array | Int32Array>> {

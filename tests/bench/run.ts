@@ -2,7 +2,7 @@ import { argv, stdout } from 'node:process';
 import type { BenchRow } from './row.js';
 
 /** Each bench stands in a file of its own and prints ratios to a bare rival measured in the same run. */
-const BENCHES: Readonly<Record<string, () => Promise<{ bench(): Promise<BenchRow[]> }>>> = {
+const BENCHES: Readonly<Record<string, () => Promise<{ bench(): BenchRow[] | Promise<BenchRow[]> }>>> = {
   engine: () => import('./engine.js'),
   serial: () => import('./serial.js'),
   mqtt: () => import('./mqtt.js'),
