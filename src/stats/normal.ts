@@ -100,7 +100,7 @@ export function upperQuantile(q: number): number {
   if (q === 0) return Infinity;
   if (q === 1) return -Infinity;
   if (q > 0.5) return -upperQuantile(1 - q);
-  if (q > 0.4) return centralQuantile(0.5 - q);
+  if (q > 0.4) return offCentre(0.5 - q);
   const t = Math.sqrt(-2 * Math.log(q));
   let z = t - (2.515517 + t * (0.802853 + t * 0.010328)) / (1 + t * (1.432788 + t * (0.189269 + t * 0.001308)));
   for (let i = 0; i < 4; i++) {
@@ -114,8 +114,13 @@ export function upperQuantile(q: number): number {
   return z;
 }
 
+/** z with P(-z < Z < z) = p, for p from the smallest double to 1, without rounding a half on the way. */
+export function centralQuantile(p: number): number {
+  return p >= 0 && p < 0.2 ? offCentre(p / 2) : upperQuantile((1 - p) / 2);
+}
+
 /** z with cdf(z) - 1/2 = p, |p| < 0.1. */
-function centralQuantile(p: number): number {
+function offCentre(p: number): number {
   let z = p / INV_SQRT_2PI;
   for (let i = 0; i < 5; i++) {
     const e = (central(z) - p) / pdf(z);
@@ -126,5 +131,5 @@ function centralQuantile(p: number): number {
 
 /** z with P(Z <= z) = p. Far upper tails lose digits in 1 - p: ask `upperQuantile` for them. */
 export function quantile(p: number): number {
-  return p > 0.4 && p < 0.6 ? centralQuantile(p - 0.5) : -upperQuantile(p);
+  return p > 0.4 && p < 0.6 ? offCentre(p - 0.5) : -upperQuantile(p);
 }
