@@ -82,6 +82,7 @@ export class StandViewer {
       odds: z === null ? null : twoSided(z),
       band: channel.band,
       tolerance: spec.tolerance,
+      resolution: spec.resolution,
       trend: values,
       trendTimes: times,
       trendLength: history?.copy(values, times) ?? 0,

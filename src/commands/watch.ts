@@ -46,27 +46,34 @@ export async function watch(
     },
     onNote: (sentence) => tell(sentence),
   };
-  const { runtime, book, log } = await standRun(stand, listener, TREND, extra.sources);
+  const { runtime, book } = await standRun(stand, listener, TREND, extra.sources);
   const price = watchPrice(stand);
   viewer = new StandViewer(stand.name, runtime, book, TREND, () => extra.notice?.() ?? price);
   viewer.logTrouble = pending.trouble;
-  const { select, view } = { select: viewer.select.bind(viewer), view: viewer.view.bind(viewer) };
-  await new Promise<void>((resolve, reject) => {
+  const shown = viewer;
+  const ended = await new Promise<NodeJS.Signals | null>((resolve, reject) => {
     const screen = openScreen({
       env: process.env,
-      view,
-      select,
-      onQuit: () => resolve(),
+      view: () => shown.view(),
+      select: (channel) => shown.select(channel),
+      onQuit: () => resolve(null),
+      onSignal: resolve,
       onFatal: reject,
-      onHangUp: () => resolve(),
-      rotate: () => log.rotate(),
     });
     tell = (sentence) => screen.message(sentence);
     for (const note of notes) screen.message(note);
-    if (extra.until !== undefined) setTimeout(() => (screen.close(), resolve()), extra.until);
+    if (extra.until !== undefined)
+      setTimeout(() => {
+        screen.close();
+        resolve(null);
+      }, extra.until);
     runtime.start();
+  }).catch(async (error: unknown) => {
+    await runtime.stop(); // what was raised is on disk before anything is said
+    throw error;
   });
   await runtime.stop();
+  if (ended !== null) process.stderr.write(`kilter: ended by ${ended}.\n`);
   process.stderr.write(`kilter: ${runtime.readings} readings, ${book.raisedCount} alarms; the alarm log is ${stand.log.file}\n`);
   return FINE;
 }

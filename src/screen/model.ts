@@ -19,6 +19,8 @@ export interface ChannelView {
   readonly odds: number | null;
   readonly band: Band | null;
   readonly tolerance: readonly [number, number] | null;
+  /** Smallest step of the instrument; null: not known. */
+  readonly resolution: number | null;
   /** Newest readings, oldest first; `trendLength` of them are valid. Times in ms run alongside. */
   readonly trend: Float64Array;
   readonly trendTimes: Float64Array;

@@ -1,0 +1,46 @@
+import type { StandView } from './model.js';
+import type { Raster } from './raster.js';
+import type { Theme } from './theme.js';
+
+/** Letters of three by five, a row of each in three bits, top row first. */
+const FONT: Readonly<Record<string, string>> = {
+  A: '25755', B: '65656', C: '34443', D: '65556', E: '74647', F: '74644', G: '34553', H: '55755', I: '72227', J: '11152', K: '55655', L: '44447',
+  M: '57755', N: '65555', O: '25552', P: '65644', Q: '25563', R: '65655', S: '34216', T: '72222', U: '55557', V: '55552', W: '55775', X: '55255',
+  Y: '55222', Z: '71247', 0: '75557', 1: '26227', 2: '71747', 3: '71317', 4: '55711', 5: '74717', 6: '74757', 7: '71122', 8: '75757', 9: '75717',
+  '-': '00700', '.': '00002', ' ': '00000',
+};
+
+/** The state of the stand in letters that can be read from across the room, and what is wrong below. */
+export function drawFar(r: Raster, t: Theme, view: StandView, row: number, height: number): void {
+  const alarmed = view.channels.filter(({ state }) => state === 'alarm');
+  const settling = view.channels.filter(({ state }) => state === 'settling' || state === 'waiting').length;
+  const words = alarmed.length > 0 ? `${alarmed.length} IN ALARM` : settling > 0 ? 'SETTLING' : 'ALL WELL';
+  const attrs = alarmed.length > 0 ? t.alarm : t.plain;
+  const scale = Math.max(1, Math.min(Math.floor(r.width / (words.length * 8)), Math.floor(height / 12)));
+  let at = row + 1;
+  at += banner(r, words, at, scale, attrs) + 1;
+  for (const { channel } of alarmed) {
+    if (at + 5 > row + height) {
+      r.text(2, row + height - 1, `and ${alarmed.length - alarmed.findIndex((c) => c.channel === channel)} more`, t.alarm);
+      return;
+    }
+    at += banner(r, channel.toUpperCase(), at, 1, t.plain) + 1;
+  }
+}
+
+/** @returns rows taken */
+function banner(r: Raster, words: string, row: number, scale: number, attrs: number): number {
+  const wide = 2 * scale;
+  const letters = Array.from(words).slice(0, Math.max(1, Math.floor(r.width / (4 * wide))));
+  let left = Math.max(0, Math.floor((r.width - letters.length * 4 * wide) / 2));
+  for (const letter of letters) {
+    const shape = FONT[letter] ?? FONT['-']!;
+    for (let y = 0; y < 5; y++)
+      for (let x = 0; x < 3; x++) {
+        if (!((Number(shape[y]) >> (2 - x)) & 1)) continue;
+        for (let dy = 0; dy < scale; dy++) for (let dx = 0; dx < wide; dx++) r.put(left + x * wide + dx, row + y * scale + dy, '█', attrs);
+      }
+    left += 4 * wide;
+  }
+  return 5 * scale;
+}

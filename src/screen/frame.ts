@@ -1,0 +1,111 @@
+import { formatDuration } from '../engine/format.js';
+import { drawFar } from './far.js';
+import { drawHelp } from './help.js';
+import { layout, SMALLEST, type Layout } from './layout.js';
+import { drawAlarms, drawFigures } from './lower.js';
+import type { StandView } from './model.js';
+import { drawPicture } from './picture.js';
+import type { Raster } from './raster.js';
+import { drawRoster } from './roster.js';
+import { drawSpread } from './spread.js';
+import type { Theme } from './theme.js';
+import { selectedIndex, type Ui } from './ui.js';
+
+/** Draws the whole screen into the raster: a function of the view model and of what the user has chosen. */
+export function drawFrame(r: Raster, t: Theme, view: StandView, ui: Ui): Layout {
+  const places = layout(r.width, r.height, view.channels.length);
+  r.clear();
+  if (r.width < SMALLEST.width || r.height < SMALLEST.height) {
+    r.text(0, 0, `kilter needs ${SMALLEST.width}x${SMALLEST.height}; this is ${r.width}x${r.height}.`, t.plain);
+    r.text(0, 1, stateWords(view), standing(view) > 0 ? t.alarm : t.plain);
+    return places;
+  }
+  const selected = selectedIndex(view, ui);
+  const [rosterRow, rosterHeight] = places.roster;
+  ui.first = Math.max(0, Math.min(Math.max(ui.first, selected - rosterHeight + 1), Math.max(0, selected), view.channels.length - rosterHeight));
+  drawHeader(r, t, view, ui);
+  if (ui.far) drawFar(r, t, view, 1, r.height - 3);
+  else {
+    drawRoster(r, t, view, ui, rosterRow, rosterHeight, selected);
+    const channel = view.channels[selected];
+    if (channel) {
+      drawTitle(r, t, view, ui, places, selected);
+      drawPicture(r, t, channel, ...places.picture, ui.span);
+      if (places.spread[1] > 0) drawSpread(r, t, channel, ...places.spread, ui.span);
+    }
+    if (ui.figures && channel) drawFigures(r, t, channel, ...places.lower);
+    else drawAlarms(r, t, view, ...places.lower);
+  }
+  drawHint(r, t, view, ui, places.hint);
+  drawStatus(r, t, view, ui, places.status);
+  if (ui.help) drawHelp(r, t);
+  return places;
+}
+
+const standing = (view: StandView): number => view.alarms.filter(({ clearedAt }) => clearedAt === null).length;
+
+/** The state of the stand in words. */
+export function stateWords(view: StandView): string {
+  const alarms = standing(view);
+  const total = view.channels.length;
+  if (alarms > 0) {
+    const channels = view.channels.filter(({ state }) => state === 'alarm').length;
+    return `${alarms} ${alarms === 1 ? 'alarm stands' : 'alarms stand'} on ${channels} of ${total} ${total === 1 ? 'channel' : 'channels'}`;
+  }
+  const settling = view.channels.filter(({ state }) => state === 'settling' || state === 'waiting').length;
+  if (settling > 0) return settling === total ? 'settling: bands are being learned' : `${settling} of ${total} channels settling, the others in their bands`;
+  return total === 1 ? 'the channel is in its band' : `all ${total} channels are in their bands`;
+}
+
+function drawHeader(r: Raster, t: Theme, view: StandView, ui: Ui): void {
+  const clock = `${new Date(view.now).toISOString().slice(11, 19)} UTC`;
+  const words = stateWords(view);
+  const alarmed = standing(view) > 0;
+  let at = r.text(0, 0, view.stand, t.strong, Math.max(10, r.width - words.length - clock.length - 8));
+  at = r.text(at + 2, 0, alarmed ? `■ ${words}` : words, alarmed ? t.alarm : t.plain, r.width - at - clock.length - 4);
+  if (ui.held) r.text(at + 2, 0, 'held', t.caution, r.width - at - clock.length - 3);
+  r.text(r.width - clock.length, 0, clock, t.faint);
+}
+
+function drawTitle(r: Raster, t: Theme, view: StandView, ui: Ui, places: Layout, selected: number): void {
+  const c = view.channels[selected]!;
+  for (let x = 0; x < r.width; x++) r.put(x, places.title, '─', t.faint, 1);
+  const at = r.text(2, places.title, ` ${c.channel}${c.unit && ` [${c.unit}]`} `, t.strong, 40);
+  const shown = Math.min(ui.span, c.trendLength);
+  if (shown > 1) {
+    const span = c.trendTimes[c.trendLength - 1]! - c.trendTimes[c.trendLength - shown]!;
+    r.text(at + 1, places.title, ` ${shown} readings, ${formatDuration(span)} `, t.faint, 40);
+  }
+  const below = view.channels.length - ui.first - places.roster[1];
+  if (view.channels.length > places.roster[1]) {
+    const more = ` ${ui.first} above, ${Math.max(0, below)} below `;
+    r.text(r.width - more.length - 2, places.title, more, t.faint);
+  }
+}
+
+function drawHint(r: Raster, t: Theme, view: StandView, ui: Ui, row: number): void {
+  const parts = ui.far
+    ? ['f back', '? help', 'q quit']
+    : ['↑↓ choose', `Enter ${ui.figures ? 'alarms' : 'figures'}`, ui.held ? 'space go on' : 'space hold', '+ - span', 'f far view', '? help', 'q quit'];
+  if (standing(view) > 0) parts.unshift('n next alarm');
+  r.text(1, row, parts.join('   '), t.faint, r.width - 2);
+}
+
+function drawStatus(r: Raster, t: Theme, view: StandView, ui: Ui, row: number): void {
+  if (view.logTrouble) {
+    r.text(0, row, `■ ${view.logTrouble}`, t.alarm);
+    return;
+  }
+  const down = view.sources.filter(({ phase }) => phase === 'lost' || phase === 'connecting');
+  const [first] = down;
+  if (first && first.phase === 'lost') {
+    r.text(1, row, `▸ ${first.source}: ${first.sentence}${down.length > 1 ? ` (and ${down.length - 1} more)` : ''}`, t.caution);
+    return;
+  }
+  const open = view.sources.filter(({ phase }) => phase === 'open').length;
+  const faults = view.sources.reduce((sum, source) => sum + source.faults, 0);
+  const words = `${open} of ${view.sources.length} sources open   ${view.rate.toFixed(view.rate < 10 ? 1 : 0)} readings/s${faults > 0 ? `   ${faults} unreadable` : ''}`;
+  const at = r.text(1, row, words, t.faint);
+  const said = ui.message ?? view.notice;
+  if (said !== null) r.text(at + 3, row, said, ui.message ? t.plain : t.faint);
+}

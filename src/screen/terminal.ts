@@ -1,0 +1,80 @@
+import { blessed, type BlessedScreen } from './blessed.js';
+
+/** What a terminal can show. Decided here, and not by blessed, which cannot read today's terminal descriptions. */
+export interface TerminalProfile {
+  /** null: usable; else why not, as the rest of a sentence. */
+  readonly unusable: string | null;
+  /** The description that blessed brings along itself and is to use. */
+  readonly description: 'xterm' | 'xterm-256color' | 'linux';
+  readonly colours: 0 | 8 | 256;
+  readonly unicode: boolean;
+  /** Braille cells; else block elements (the Linux console has no braille), else ASCII. */
+  readonly dots: 'braille' | 'block' | 'ascii';
+  readonly mouse: boolean;
+}
+
+/** @param env TERM, COLORTERM, NO_COLOR, and LC_ALL, LC_CTYPE, LANG in the precedence of POSIX */
+export function terminalProfile(env: NodeJS.ProcessEnv): TerminalProfile {
+  const term = (env['TERM'] ?? '').toLowerCase();
+  const locale = env['LC_ALL'] || env['LC_CTYPE'] || env['LANG'] || '';
+  const unicode = /utf-?8/i.test(locale);
+  const linux = term.startsWith('linux');
+  const mono = (env['NO_COLOR'] ?? '') !== '' || /^(vt\d|ansi-m|xterm-mono)/.test(term);
+  const many = /256color|direct|kitty|alacritty|ghostty|wezterm|foot/.test(term) || /truecolor|24bit/i.test(env['COLORTERM'] ?? '');
+  return {
+    unusable: term === '' ? 'TERM is not set' : term === 'dumb' || term === 'unknown' ? `TERM is '${term}'` : null,
+    description: linux ? 'linux' : many ? 'xterm-256color' : 'xterm',
+    colours: mono ? 0 : many ? 256 : 8,
+    unicode,
+    dots: !unicode ? 'ascii' : linux ? 'block' : 'braille',
+    mouse: !linux && !term.startsWith('vt'),
+  };
+}
+
+/** ASCII stand-ins for the characters that views draw with. */
+const PLAIN: Readonly<Record<string, string>> = {
+  '●': '*', '■': '#', '□': '?', '▸': '>', '◂': '<', '┼': '+', '│': '|', '┊': ':', '─': '-', '·': '.', '…': '~', '±': '+', 'σ': 's', '−': '-',
+  '↑': '^', '↓': 'v', '█': '#', '▁': '_', '▂': '_', '▃': '.', '▄': '-', '▅': '-', '▆': '=', '▇': '^', '°': 'd', 'µ': 'u', 'μ': 'u', '²': '2', '³': '3', '×': 'x',
+};
+
+/** A blessed screen for the profile. Nothing but ASCII leaves it without UTF-8, and no colour without colours. */
+export function openBlessed(profile: TerminalProfile, input: NodeJS.ReadableStream, output: NodeJS.WritableStream): BlessedScreen {
+  blessed.Tput.ipaths.length = 0; // its search path for descriptions: it would read files that it cannot parse
+  const screen = blessed.screen({
+    input,
+    output,
+    terminal: profile.description,
+    forceUnicode: profile.unicode,
+    smartCSR: false,
+    fastCSR: false,
+    useBCE: true,
+    dockBorders: false,
+    fullUnicode: false,
+    resizeTimeout: 60,
+    warnings: false,
+    sendFocus: false,
+  }) as unknown as BlessedScreen;
+  screen.tput.brokenACS = true; // line drawing as plain characters
+  if (profile.colours === 0 || !profile.unicode) {
+    const draw = screen.draw.bind(screen);
+    screen.draw = (start, end) => {
+      for (let y = start; y <= end; y++) {
+        const line = screen.lines[y];
+        if (line?.dirty) for (const cell of line) plain(cell, profile);
+      }
+      draw(start, end);
+    };
+  }
+  // SGR mouse reports and motion with a button only; blessed would ask for obsolete ones.
+  screen.program.enableMouse = () => {
+    if (profile.mouse) screen.program.setMouse({ vt200Mouse: true, cellMotion: true, sgrMouse: true }, true);
+  };
+  return screen;
+}
+
+const NO_COLOURS = 0x3ffff; // both colours the terminal's own
+
+function plain(cell: [number, string], { colours, unicode }: TerminalProfile): void {
+  if (colours === 0) cell[0] |= NO_COLOURS;
+  if (!unicode && cell[1] > '~') cell[1] = PLAIN[cell[1]] ?? '?';
+}
