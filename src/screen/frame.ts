@@ -85,9 +85,9 @@ function drawTitle(r: Raster, t: Theme, view: StandView, ui: Ui, places: Layout,
 
 function drawHint(r: Raster, t: Theme, view: StandView, ui: Ui, row: number): void {
   const parts = ui.far
-    ? ['f back', '? help', 'q quit']
-    : ['↑↓ choose', `Enter ${ui.figures ? 'alarms' : 'figures'}`, ui.held ? 'space go on' : 'space hold', '+ - span', 'f far view', '? help', 'q quit'];
-  if (standing(view) > 0) parts.unshift('n next alarm');
+    ? ['? help', 'q quit', 'f back']
+    : ['? help', 'q quit', '↑↓ choose', `Enter ${ui.figures ? 'alarms' : 'figures'}`, ui.held ? 'space go on' : 'space hold', 'f far view', '+ - span'];
+  if (standing(view) > 0) parts.splice(2, 0, 'n next alarm');
   r.text(1, row, parts.join('   '), t.faint, r.width - 2);
 }
 

@@ -49,11 +49,11 @@ export function drawFigures(r: Raster, t: Theme, c: ChannelView, row: number, he
   const { band, window: w, unit } = c;
   const u = unit && ` ${unit}`;
   const value = (x: number): string => formatValue(x, band?.sigma ?? null, c.resolution);
-  const fine = (x: number): string => formatValue(x, (band?.sigma ?? Math.abs(x)) / 100);
+  const fine = (x: number): string => formatValue(x, (band?.sigma ?? Math.abs(x)) / 5);
   const pairs: [string, string][] = [];
   if (band) {
     pairs.push(
-      ['band', `${band.origin}${band.n === null ? '' : ` from ${band.n} readings`}`],
+      ['band', `${band.origin}${band.n === null ? '' : `, n ${band.n}`}`],
       ['centre', `${fine(band.centre)}${band.centreUncertainty === null ? '' : ` ± ${fine(band.centreUncertainty)}`}${u}`],
       ['sigma', `${fine(band.sigma)}${band.sigmaUncertainty === null ? '' : ` ± ${fine(band.sigmaUncertainty)}`}${u}`],
       ['limits', `${value(band.low)} to ${value(band.high)}${u}, ${band.k} sigma`],
