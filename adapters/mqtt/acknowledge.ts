@@ -5,13 +5,13 @@ const MOST_PENDING = 65_535; // packet identifiers of MQTT: a broker cannot have
 /**
  * Acknowledges QoS 1 messages only after what they led to is durable. mqtt.js acknowledges when its handler calls back,
  * and reads no further packet before that, pings included; so the handler calls back at once with an error, which
- * withholds the PUBACK, and it is sent from here. That uses a method of mqtt.js which is not public: the version is
- * pinned, and tests/real/mqttAcknowledge.test.ts proves it on a real broker.
+ * withholds the PUBACK, and it is sent from here, for all that came meanwhile together. That uses a method of mqtt.js
+ * which is not public: the version is pinned, and tests/real/mqttDurable.test.ts proves it on a real broker.
  */
 export class Acknowledger {
   private waiting: number[] = [];
   private busy = false;
-  private session = 0;
+  private connection = 0;
 
   /** @param onFailed what was received could not be made durable: nothing is acknowledged, so that the broker sends it again */
   constructor(
@@ -20,8 +20,9 @@ export class Acknowledger {
     private readonly onFailed: () => void,
   ) {}
 
-  get pending(): number {
-    return this.waiting.length + (this.busy ? 1 : 0);
+  /** Whether anything waits for its acknowledgement. */
+  get isPending(): boolean {
+    return this.busy || this.waiting.length > 0;
   }
 
   add(messageId: number): void {
@@ -29,29 +30,38 @@ export class Acknowledger {
     if (!this.busy) void this.flush();
   }
 
-  /** The connection has gone: what was not acknowledged comes again, under numbers of its own. */
+  /** The connection has gone: what was not acknowledged comes again on the next one. */
   drop(): void {
-    this.session++;
+    this.connection++;
     this.waiting = [];
   }
 
   private async flush(): Promise<void> {
     this.busy = true;
-    try {
-      while (this.waiting.length > 0) {
-        const { session } = this;
-        const batch = this.waiting;
-        this.waiting = [];
-        await this.durable();
-        if (session !== this.session || !this.client.connected) continue;
-        const inner = this.client as unknown as { _sendPacket(packet: object): void };
-        for (const messageId of batch) inner._sendPacket({ cmd: 'puback', messageId, reasonCode: 0 });
+    while (this.waiting.length > 0) {
+      const { connection } = this;
+      const batch = this.waiting;
+      this.waiting = [];
+      const stored = await this.durable().then(
+        () => true,
+        () => false,
+      );
+      if (connection !== this.connection) continue;
+      if (stored) this.send(batch);
+      else {
+        this.drop();
+        this.onFailed();
       }
-    } catch {
-      this.drop();
-      this.onFailed();
-    } finally {
-      this.busy = false;
     }
+    this.busy = false;
+  }
+
+  private send(messageIds: readonly number[]): void {
+    if (!this.client.connected) return;
+    const inner = this.client as unknown as { _sendPacket(packet: object): void };
+    const { stream } = this.client;
+    stream.cork(); // one write to the socket for all of them
+    for (const messageId of messageIds) inner._sendPacket({ cmd: 'puback', messageId, reasonCode: 0 });
+    stream.uncork();
   }
 }

@@ -1,21 +1,25 @@
-import mqtt, { type IClientOptions, type IPublishPacket, type MqttClient } from 'mqtt';
+import mqtt, { type IConnackPacket, type IPublishPacket, type ISubscriptionMap, type MqttClient } from 'mqtt';
 import { clean } from '../../src/text/clean.js';
 import type { MqttOptions } from '../options.js';
-import type { Sink, Source, Wanted } from '../source.js';
+import type { Sink, Source, SourcePhase, Wanted } from '../source.js';
 import { Acknowledger } from './acknowledge.js';
-import { isText, Tap } from './payload.js';
-import { Routes } from './routes.js';
-import { fetchSecret, readOrSay } from './secret.js';
-import { brokerName, connectionTrouble } from './trouble.js';
+import { brokerAddress } from './address.js';
+import { clientOptions } from './clientOptions.js';
+import { fingerprint } from './fingerprint.js';
+import { Intake } from './intake.js';
+import { Redelivery } from './redelivery.js';
+import { connectionTrouble, goodbye } from './trouble.js';
 
-const CONNECT_WITHIN = 10_000; // ms
-const STOP_WITHIN = 1000; // ms for acknowledgements and the good-bye
+const STOP_WITHIN = 1000; // ms for acknowledgements, and as much for the good-bye
+const REFUSED_FROM = 128; // return codes of SUBACK from here on are refusals
 
 /**
- * Readings from an MQTT broker, 3.1.1 or 5, over TCP or TLS. The session is kept by the broker over lost connections, so
- * that at QoS 1 nothing is missed; a message is acknowledged once the alarms it led to are on disk. A retained message
- * at subscription is old news: shown, not judged.
- * @throws UserError where a secret or certificate is not there, or a pointer is none
+ * Readings from an MQTT broker, 3.1.1 or 5, over TCP or TLS. The broker keeps the session over lost connections, so that at
+ * QoS 1 nothing is missed; a message is acknowledged once the alarms it led to are on disk, and one that is
+ * repeated after a fault is taken once. A retained message at subscription is old news: shown, not judged. The broker
+ * may come late, go and come back: the wait between attempts doubles from `retryFrom` to `retryTo` (ms) and varies by a
+ * quarter. What is wrong is said in a sentence through `phase`.
+ * @throws UserError where the address, a secret, a certificate, a topic or a pointer cannot serve
  */
 export function mqttSource(name: string, options: MqttOptions, wanted: readonly Wanted[]): Source {
   return new MqttSource(name, options, wanted);
@@ -24,14 +28,20 @@ export function mqttSource(name: string, options: MqttOptions, wanted: readonly 
 class MqttSource implements Source {
   readonly ended: Promise<void>;
   private finished!: () => void;
-  private readonly routes: Routes<Tap>;
+  private readonly broker: string;
+  private readonly intake: Intake;
   private readonly client: MqttClient;
-  private readonly numbers = new Float64Array(2);
+  private readonly redelivery: Redelivery | null;
+  /** Marks what comes by this run's subscriptions (MQTT 5): an older stand may have left others in the session. */
+  private readonly subscription: number;
   private sink: Sink | null = null;
   private acknowledger: Acknowledger | null = null;
   private retry: NodeJS.Timeout | undefined;
-  private backOff: number;
+  private wait: number;
+  private openSince = NaN;
+  private wasOpen = false;
   private trouble: string | null = null;
+  private said = '';
   private stopping: Promise<void> | null = null;
 
   constructor(
@@ -39,163 +49,154 @@ class MqttSource implements Source {
     private readonly options: MqttOptions,
     wanted: readonly Wanted[],
   ) {
+    const address = brokerAddress(options.url);
     this.ended = new Promise((resolve) => (this.finished = resolve));
-    this.routes = new Routes(wanted.map((channel) => new Tap(channel)));
-    this.backOff = options.retryFrom;
-    // Made now, so that a missing file or variable is said before anything runs; it connects at start.
-    this.client = mqtt.connect(options.url, clientOptions(name, options));
-    this.client.on('error', (error) => (this.trouble = connectionTrouble(error, options.url)));
+    this.broker = address.label;
+    this.intake = new Intake(wanted, options.maxPayload);
+    this.redelivery = options.qos === 1 ? new Redelivery() : null;
+    this.subscription = 1 + (fingerprint(this.intake.filters.join('\n')) % 268_435_455); // 3.8.2.1.2 of MQTT 5
+    this.client = mqtt.connect(clientOptions(name, options, address));
+    this.wait = options.retryFrom;
   }
 
   start(sink: Sink): void {
     if (this.sink || this.stopping) return;
     this.sink = sink;
-    const { client, options } = this;
+    const { client } = this;
     this.acknowledger = new Acknowledger(
       client,
       () => sink.durable(),
-      () => client.stream.destroy(),
+      () => this.cut(`What came from ${this.broker} could not be stored; it is to be sent again.`),
     );
-    client.on('connect', () => this.subscribe());
+    client.on('connect', (packet) => this.subscribe(packet));
     client.on('close', () => this.lost());
+    client.on('error', (error) => this.failed(error));
+    client.on('disconnect', ({ reasonCode = 0 }) => (this.trouble = goodbye(reasonCode, this.broker)));
     client.handleMessage = (packet, done) => this.take(packet, done);
-    queueMicrotask(() => {
-      if (this.stopping) return;
-      sink.phase('connecting', `Connecting to ${brokerName(options.url)}.`);
-      client.connect();
-    });
+    this.retry = setTimeout(() => {
+      this.say('connecting', `Connecting to ${this.broker}.`);
+      this.connect(() => client.connect());
+    }, 0);
   }
 
   stop(): Promise<void> {
-    this.stopping ??= this.end();
-    return this.stopping;
+    return (this.stopping ??= this.end());
   }
 
-  private async end(): Promise<void> {
-    clearTimeout(this.retry);
-    const { client, acknowledger } = this;
-    const until = performance.now() + STOP_WITHIN;
-    while (client.connected && (acknowledger?.pending ?? 0) > 0 && performance.now() < until) await pause(10);
-    const { sink } = this;
-    this.sink = null;
-    acknowledger?.drop();
-    // end() waits for ever while a message is under way and nobody is there: it is given a moment, then forced
-    await Promise.race([client.endAsync().catch(() => undefined), pause(client.connected ? STOP_WITHIN : 0)]);
-    await Promise.race([client.endAsync(true).catch(() => undefined), pause(200)]);
-    sink?.phase('stopped', `No longer connected to ${brokerName(this.options.url)}.`);
-    this.finished();
+  private connect(attempt: () => void): void {
+    try {
+      attempt();
+    } catch (error) {
+      this.trouble = connectionTrouble(error, this.broker);
+      this.lost();
+    }
   }
 
-  private subscribe(): void {
-    const { client, options, sink } = this;
-    this.backOff = options.retryFrom;
-    this.trouble = null;
-    const filters = Object.fromEntries(this.routes.filters.map((filter) => [filter, { qos: options.qos }]));
-    client.subscribe(filters, (error, granted) => {
-      if (!this.sink) return;
-      const refused = [...(granted ?? [])].filter(({ qos }) => qos >= 128).map(({ topic }) => clean(topic, 80));
-      if (error && refused.length === 0) {
-        this.trouble = `${brokerName(options.url)} does not take the subscription: ${clean(error.message, 120)}`;
-        client.stream.destroy();
-      } else if (refused.length > 0)
-        sink?.phase('open', `Connected to ${brokerName(options.url)}, which refuses the topics ${refused.join(', ')}: look at its access rules.`);
-      else sink?.phase('open', `Connected to ${brokerName(options.url)}.`);
+  private subscribe({ sessionPresent, properties }: IConnackPacket): void {
+    const { client, options, intake } = this;
+    if (!sessionPresent) this.redelivery?.forget();
+    const five = options.protocol === '5';
+    // Retained messages are wanted once; after a reconnection only where the broker has forgotten us (MQTT 5, 3.8.3.1).
+    const each = { qos: options.qos, ...(five && { nl: false, rap: false, rh: this.wasOpen ? 1 : 0 }) };
+    const filters = Object.fromEntries(intake.filters.map((filter) => [filter, each])) as ISubscriptionMap;
+    const marked = five && properties?.subscriptionIdentifiersAvailable !== false;
+    client.subscribe(filters, marked ? { qos: options.qos, properties: { subscriptionIdentifier: this.subscription } } : { qos: options.qos }, (error, _, packet) => {
+      if (!this.stopping && client.connected) this.subscribed(error, packet?.granted as number[] | undefined);
     });
+  }
+
+  private subscribed(error: Error | null, granted: readonly number[] | undefined): void {
+    const { broker } = this;
+    const refused = this.intake.filters.filter((_, i) => (granted?.[i] ?? 0) >= REFUSED_FROM).map((topic) => `'${clean(topic, 80)}'`);
+    if (error && refused.length === 0) {
+      this.cut(`${broker} does not take the subscription: ${clean(error.message, 120)}.`);
+      return;
+    }
+    this.openSince = performance.now();
+    this.wasOpen = true;
+    if (refused.length === 0) this.say('open', `Connected to ${broker}.`);
+    else this.say('open', `Connected to ${broker}, which refuses ${refused.slice(0, 5).join(', ')}${refused.length > 5 ? ' and more' : ''}: look at its access rules.`);
+  }
+
+  private failed(error: Error): void {
+    this.trouble = connectionTrouble(error, this.broker);
+    if (this.client.connected) this.client.stream.destroy(); // after bytes that are no MQTT nothing that follows can be trusted
+  }
+
+  private cut(sentence: string): void {
+    this.trouble = sentence;
+    this.client.stream.destroy();
   }
 
   private lost(): void {
     this.acknowledger?.drop();
-    const { sink, options } = this;
-    if (!sink || this.stopping) return;
-    sink.phase('lost', `${this.trouble ?? `The connection to ${brokerName(options.url)} is lost.`} Trying again.`);
+    if (this.stopping) return;
+    const { options, broker, client, trouble } = this;
+    if (performance.now() - this.openSince > options.retryTo) this.wait = options.retryFrom; // not before: one that opens and falls at once is not tried at full pace
+    this.openSince = NaN;
     this.trouble = null;
+    this.say(this.wasOpen ? 'lost' : 'connecting', `${trouble ?? `The connection to ${broker} is lost.`} Trying again.`);
     clearTimeout(this.retry);
-    this.retry = setTimeout(() => {
-      if (!this.stopping) this.client.reconnect();
-    }, this.backOff * (0.75 + Math.random() * 0.5));
-    this.backOff = Math.min(this.backOff * 2, options.retryTo);
+    this.retry = setTimeout(() => this.connect(() => client.reconnect()), this.wait * (0.75 + Math.random() * 0.5));
+    this.wait = Math.min(this.wait * 2, options.retryTo);
   }
 
   private take(packet: IPublishPacket, done: (error?: Error) => void): void {
-    try {
-      if (this.sink) this.deliver(packet, this.sink);
-    } catch (error) {
-      // A throw here would stop the client's pump for good while it still says that it is connected.
-      this.sink?.fault('bad-json', `fault in the message handler: ${String(error)}`);
+    const { sink, acknowledger } = this;
+    const { qos, messageId } = packet;
+    if (sink) {
+      try {
+        this.deliver(packet, sink);
+      } catch (error) {
+        // A throw here would stop the client's pump for good while it still says that it is connected.
+        sink.fault('unread', `${packet.topic}: ${String(error)}`);
+      }
     }
-    if (packet.qos === 0 || packet.messageId === undefined || !this.acknowledger) {
-      done();
-      return;
+    if (qos === 0 || messageId === undefined) done();
+    else {
+      done(LATER);
+      if (sink) acknowledger?.add(messageId);
     }
-    done(LATER);
-    this.acknowledger.add(packet.messageId);
   }
 
-  private deliver({ topic, payload: raw, retain }: IPublishPacket, sink: Sink): void {
+  private deliver({ topic, payload: raw, retain, dup, qos, messageId, properties }: IPublishPacket, sink: Sink): void {
+    const ids = properties?.subscriptionIdentifier;
+    if (ids !== undefined && ![ids].flat().includes(this.subscription)) return;
     const payload = typeof raw === 'string' ? Buffer.from(raw) : raw;
-    const taps = this.routes.to(topic);
-    if (taps.length === 0) return;
-    if (payload.length > this.options.maxPayload) { sink.fault('too-long', payload.toString('latin1', 0, 60)); return; }
-    if (!isText(payload)) { sink.fault('bad-bytes', payload.toString('latin1', 0, 60)); return; }
-    let document: unknown;
-    let parsed = false;
-    for (const tap of taps) {
-      let fault;
-      if (tap.needsJson) {
-        if (!parsed) {
-          try {
-            document = JSON.parse(payload.toString('utf8'));
-            parsed = true;
-          } catch {
-            sink.fault('bad-json', payload.toString('utf8', 0, 60)); return;
-          }
-        }
-        fault = tap.json(document, topic, this.numbers);
-      } else {
-        this.numbers[1] = NaN;
-        fault = tap.plain(payload, this.numbers);
-      }
-      if (fault !== null) {
-        sink.fault(fault, payload.toString('utf8', 0, 60));
-        continue;
-      }
-      const value = this.numbers[0]!;
-      const own = this.numbers[1]!;
-      const time = own === own ? own : sink.now();
-      if (retain) {
-        sink.stale(tap.wanted.slot, time, value);
-        sink.fault('stale', topic);
-      } else sink.reading(tap.wanted.slot, time, value);
+    if (qos > 0 && messageId !== undefined && this.redelivery?.seen(messageId, dup, topic, payload)) sink.fault('repeated', topic);
+    else this.intake.take(topic, payload, { retain, dup }, sink);
+  }
+
+  /** Says what has changed, once. */
+  private say(phase: SourcePhase, sentence: string): void {
+    if (this.said === phase + sentence) return;
+    this.said = phase + sentence;
+    this.sink?.phase(phase, sentence);
+  }
+
+  private async end(): Promise<void> {
+    clearTimeout(this.retry);
+    const { client, acknowledger, sink } = this;
+    await within(STOP_WITHIN, () => !client.connected || !acknowledger?.isPending);
+    this.sink = null;
+    acknowledger?.drop();
+    // end() waits for ever while something is under way and nobody answers: it is given a moment, then the line is cut.
+    if (client.connected) {
+      let gone = false;
+      client.end(() => (gone = true));
+      await within(STOP_WITHIN, () => gone);
     }
+    const stream = client.stream as MqttClient['stream'] | undefined;
+    stream?.destroy();
+    await within(STOP_WITHIN, () => stream?.closed !== false);
+    if (sink) sink.phase('stopped', `No longer connected to ${this.broker}.`);
+    this.finished();
   }
 }
 
 const LATER = new Error('acknowledged when it is durable');
 
-const pause = (ms: number): Promise<void> => new Promise((resolve) => setTimeout(resolve, ms));
-
-function clientOptions(name: string, options: MqttOptions): IClientOptions {
-  const { protocol, clientId, keepalive, ca, cert, key } = options;
-  const user = fetchSecret(options.user, 'user name', name);
-  const password = fetchSecret(options.password, 'password', name);
-  const pem = (file: string | null, what: string): Buffer | undefined => (file === null ? undefined : readOrSay(file, `${what} of the source ${clean(name, 60)}`));
-  const own = { ca: pem(ca, 'authority'), cert: pem(cert, 'certificate'), key: pem(key, 'key') };
-  return {
-    manualConnect: true,
-    protocolVersion: protocol === '5' ? 5 : 4,
-    clientId,
-    clean: false,
-    keepalive: Math.max(1, Math.round(keepalive / 1000)),
-    connectTimeout: CONNECT_WITHIN,
-    reconnectPeriod: 0, // the waits between attempts are ours: doubled, capped, with jitter
-    reconnectOnConnackError: true,
-    resubscribe: false, // on every connect all filters are subscribed to, whatever the broker remembers
-    queueQoSZero: false,
-    ...(protocol === '5' && { properties: { sessionExpiryInterval: 86_400 } }),
-    ...(user !== null && { username: user }),
-    ...(password !== null && { password }),
-    ...(own.ca && { ca: own.ca }),
-    ...(own.cert && { cert: own.cert }),
-    ...(own.key && { key: own.key }),
-  };
+async function within(most: number, holds: () => boolean): Promise<void> {
+  for (const until = performance.now() + most; !holds() && performance.now() < until; )
+    await new Promise((resolve) => setTimeout(resolve, 5));
 }
