@@ -1,13 +1,23 @@
 import { stirlingRemainder } from './gamma.js';
+import { peakedIntegral, peakFrom } from './peakedIntegral.js';
 
-/** Density of s / sigma at x for a sample standard deviation with `df` degrees of freedom (chi divided by sqrt(df)). */
-export function spreadDensity(df: number): (x: number) => number {
-  const scale = 2 * Math.sqrt(df / (4 * Math.PI)) * Math.exp(-stirlingRemainder(df / 2));
-  return (x) => (x <= 0 ? 0 : (scale * Math.exp((df / 2) * (2 * Math.log(x) - x * x + 1))) / x);
+/** ln s - (s^2 - 1) / 2 for s = e^u, without cancellation near s = 1. */
+function lnDensity(u: number): number {
+  if (Math.abs(u) > 0.2) return u - Math.expm1(2 * u) / 2;
+  let sum = 0;
+  for (let k = 17; k >= 2; k--) sum = ((1 + sum) * 2 * u) / k; // 2u/2 (1 + 2u/3 (1 + ...))
+  return -u * sum;
 }
 
-/** The interval outside which that density may be neglected at double precision. */
-export function spreadSupport(df: number): readonly [low: number, high: number] {
-  const sd = 1 / Math.sqrt(2 * df);
-  return [Math.max(0, 1 - 11 * sd), 1 + 11 * sd + (df < 10 ? 3 : 0)];
+/**
+ * Mean of g(s / sigma) over the sample standard deviations s that `df` degrees of freedom give (chi / sqrt(df)), as an
+ * integral over ln s.
+ * @param g positive and monotone
+ * @param direction 1 where g rises with s, -1 where it falls
+ */
+export function averageOverSpread(df: number, g: (s: number) => number, direction: 1 | -1): number {
+  const scale = Math.sqrt(df / Math.PI) * Math.exp(-stirlingRemainder(df / 2));
+  const step = Math.min(0.25, 1 / Math.sqrt(2 * df));
+  const peak = peakFrom((u) => df * lnDensity(u) + Math.log(g(Math.exp(u))), 0, direction, step / 2);
+  return scale * peakedIntegral((u) => Math.exp(df * lnDensity(u)) * g(Math.exp(u)), peak, step);
 }
