@@ -1,4 +1,5 @@
 import { normal } from './noise.js';
+import { EVERY, faultAt, ROUND, type PlannedFault } from './schedule.js';
 
 /** One instrument of the simulated coolant-pump cell: what it shows while nothing is wrong. */
 export interface Instrument {
@@ -12,9 +13,6 @@ export interface Instrument {
   readonly range: readonly [number, number];
 }
 
-/** Readings lie this far apart, ms. */
-export const EVERY = 100;
-
 /** An endurance cell for coolant pumps. All of it is invented. */
 export const INSTRUMENTS: readonly Instrument[] = [
   { channel: 'flow', unit: 'L/min', centre: 41.2, sigma: 0.31, resolution: 0.01, range: [0, 60] },
@@ -25,66 +23,41 @@ export const INSTRUMENTS: readonly Instrument[] = [
   { channel: 'supply', unit: 'V', centre: 24.05, sigma: 0.06, resolution: 0.01, range: [0, 32] },
 ];
 
-export type FaultKind = 'step' | 'drift' | 'noise' | 'frozen' | 'silence' | 'spike' | 'coarse';
+export { EVERY, ROUND, SCHEDULE, SETTLING, faultAt } from './schedule.js';
 
-/** One fault of the schedule; steps of EVERY ms, counted from the start of a round. */
-export interface PlannedFault {
-  readonly kind: FaultKind;
-  readonly channel: string;
-  readonly from: number;
-  readonly to: number;
-  /** What is wrong, in plain words. */
-  readonly sentence: string;
-}
-
-const SECOND = 1000 / EVERY;
-const planned = (kind: FaultKind, channel: string, from: number, lasts: number, sentence: string): PlannedFault => ({
-  kind,
-  channel,
-  from: from * SECOND,
-  to: (from + lasts) * SECOND,
-  sentence,
-});
-
-/** Each channel settles during the first 20 s. Then one fault at a time, with quiet in between; and round again. */
-export const SETTLING = 200;
-export const ROUND = 210 * SECOND;
-export const SCHEDULE: readonly PlannedFault[] = [
-  planned('step', 'flow', 30, 15, 'a valve has closed a little: flow is 2 L/min lower'),
-  planned('drift', 'bearing', 55, 25, 'the bearing runs dry: its temperature climbs 0.1 degC a second'),
-  planned('noise', 'vibration', 90, 18, 'a bolt works loose: vibration grows noisy'),
-  planned('frozen', 'outlet', 118, 12, 'the outlet sensor is frozen: it repeats its last value'),
-  planned('silence', 'supply', 138, 10, 'the supply meter is unplugged: nothing comes from it'),
-  planned('spike', 'inlet', 156, 0.1, 'an air bubble: the inlet pressure spikes for one reading'),
-  planned('coarse', 'flow', 170, 20, 'the flow meter has lost digits: it shows whole litres only'),
-];
-
-/** The fault at a step; null while nothing is wrong. Rounds repeat after the settling of the first. */
-export function faultAt(step: number): PlannedFault | null {
-  const inRound = step % ROUND;
-  return SCHEDULE.find(({ from, to }) => inRound >= from && inRound < to) ?? null;
-}
+/** The number of an instrument in INSTRUMENTS; -1 where the cell has none of that name. */
+export const instrumentAt = (channel: string): number => INSTRUMENTS.findIndex((instrument) => instrument.channel === channel);
 
 /**
- * The reading of instrument `i` at a step; null where it sends none.
+ * The reading of instrument `i` at a step; null where it sends none. The same seed gives the same run, always.
+ * @param step from 0, EVERY ms apart
  * @param faults whether the schedule of faults is in force
  */
 export function readingAt(seed: number, i: number, step: number, faults: boolean): number | null {
   const instrument = INSTRUMENTS[i]!;
-  const { centre, sigma, resolution } = instrument;
   const fault = faults ? faultAt(step) : null;
-  const healthy = centre + sigma * normal(seed, i, step);
-  if (fault?.channel !== instrument.channel) return round(healthy, resolution);
+  if (fault?.channel !== instrument.channel) return round(healthyAt(seed, i, step), instrument.resolution);
   const since = (step % ROUND) - fault.from;
-  switch (fault.kind) {
+  return faulty(instrument, fault, since, healthyAt(seed, i, step), healthyAt(seed, i, step - since - 1));
+}
+
+function healthyAt(seed: number, i: number, step: number): number {
+  const { centre, sigma } = INSTRUMENTS[i]!;
+  return centre + sigma * normal(seed, i, step);
+}
+
+/** @param since steps since the fault began. @param healthy what it would show. @param last what it showed before the fault */
+function faulty({ centre, sigma, resolution }: Instrument, { kind }: PlannedFault, since: number, healthy: number, last: number): number | null {
+  const seconds = (since * EVERY) / 1000;
+  switch (kind) {
     case 'step':
       return round(healthy - 2, resolution);
     case 'drift':
-      return round(healthy + (0.1 * since) / SECOND, resolution);
+      return round(healthy + 0.1 * seconds, resolution);
     case 'noise':
-      return round(centre + sigma * (1 + since / (3 * SECOND)) * normal(seed, i, step), resolution);
+      return round(centre + (healthy - centre) * (1 + seconds / 3), resolution);
     case 'frozen':
-      return round(centre + sigma * normal(seed, i, step - since), resolution);
+      return round(last, resolution);
     case 'silence':
       return null;
     case 'spike':

@@ -2,30 +2,32 @@ import { once } from 'node:events';
 import { createServer, type AddressInfo } from 'node:net';
 import { PassThrough } from 'node:stream';
 import { Aedes } from 'aedes';
-import mqtt from 'mqtt';
-import { EVERY, faultAt, INSTRUMENTS, readingAt } from './cell.js';
+import mqtt, { type MqttClient } from 'mqtt';
+import { INSTRUMENTS, instrumentAt, readingAt } from './cell.js';
+import { LINE_CHANNELS, MQTT_CHANNELS, pointerOf, topicOf } from './demoChannels.js';
+import { EVERY, faultToTell } from './schedule.js';
 
-/** How the demo's channels reach it: three over MQTT (one as a bare number, two as JSON), three on a line like a logger's. */
-export const MQTT_CHANNELS = ['bearing', 'vibration', 'supply'] as const;
-export const LINE_CHANNELS = ['flow', 'inlet', 'outlet'] as const;
+const BEHIND = 20; // steps that are made up for after a pause; what lies further back is left out, as real time leaves it out
+const UNREAD = 65_536; // bytes of lines that may wait for a reader
 
-export const topicOf = (channel: string): string => `cell3/${channel}`;
-/** JSON Pointer into the payload; null where the payload is the number. */
-export const pointerOf = (channel: string): string | null => (channel === 'supply' ? null : '/value');
+export { LINE_CHANNELS, MQTT_CHANNELS, pointerOf, topicOf } from './demoChannels.js';
 
 export interface DemoRig {
   /** Address of the embedded broker. */
   readonly url: string;
-  /** Lines of csv as a serial logger would send them: LINE_CHANNELS in order. */
+  /** Lines of csv as a serial logger would send them. Lines that nobody reads are dropped beyond 64 KiB. */
   readonly lineStream: PassThrough;
+  /** Names of the columns of those lines. */
+  readonly columns: readonly string[];
   /** What is wrong with the cell at the moment, in plain words; null while nothing is. */
   faultNow(): string | null;
+  /** Ends everything. Safe to call twice. */
   stop(): Promise<void>;
 }
 
 /**
- * The simulated cell on real transports: a broker on the loopback interface with a real client that publishes to it, and a
- * stream of lines. Nothing is reachable from outside.
+ * The simulated cell on real transports: a broker on the loopback interface with a real client that publishes to it over
+ * TCP, and a stream of lines. Nothing is reachable from outside.
  */
 export async function startDemoRig({ seed }: { readonly seed: number }): Promise<DemoRig> {
   const broker = await Aedes.createBroker();
@@ -34,34 +36,47 @@ export async function startDemoRig({ seed }: { readonly seed: number }): Promise
   await once(server, 'listening');
   const url = `mqtt://127.0.0.1:${(server.address() as AddressInfo).port}`;
   const client = await mqtt.connectAsync(url, { clientId: 'cell3', reconnectPeriod: 500 });
+  client.on('error', () => undefined); // it connects again by itself
   const lineStream = new PassThrough();
   const began = performance.now();
   let step = 0;
-  const indexOf = (channel: string): number => INSTRUMENTS.findIndex((instrument) => instrument.channel === channel);
-  const tick = (): void => {
+  const timer = setInterval(() => {
     const due = Math.floor((performance.now() - began) / EVERY);
-    for (; step <= due; step++) send(step);
-  };
-  const send = (at: number): void => {
-    for (const channel of MQTT_CHANNELS) {
-      const value = readingAt(seed, indexOf(channel), at, true);
-      if (value === null) continue;
-      const payload = pointerOf(channel) === null ? String(value) : JSON.stringify({ value, unit: INSTRUMENTS[indexOf(channel)]!.unit });
-      client.publish(topicOf(channel), payload, { qos: 1 });
+    step = Math.max(step, due - BEHIND);
+    for (; step <= due; step++) {
+      publish(client, seed, step);
+      if (lineStream.writableLength + lineStream.readableLength < UNREAD) lineStream.write(lineAt(seed, step));
     }
-    lineStream.write(`${LINE_CHANNELS.map((channel) => readingAt(seed, indexOf(channel), at, true)).join(',')}\n`);
+  }, EVERY / 4);
+  const end = async (): Promise<void> => {
+    clearInterval(timer);
+    lineStream.end();
+    await client.endAsync(true);
+    await new Promise<void>((resolve) => broker.close(() => resolve()));
+    await new Promise<void>((resolve) => server.close(() => resolve()));
   };
-  const timer = setInterval(tick, EVERY / 2);
+  let stopping: Promise<void> | null = null;
   return {
     url,
     lineStream,
-    faultNow: () => faultAt(step)?.sentence ?? null,
-    stop: async () => {
-      clearInterval(timer);
-      lineStream.end();
-      await client.endAsync(true);
-      await new Promise<void>((resolve) => broker.close(() => resolve()));
-      await new Promise<void>((resolve) => server.close(() => resolve()));
-    },
+    columns: LINE_CHANNELS,
+    faultNow: () => faultToTell(Math.max(0, step - 1))?.sentence ?? null,
+    stop: () => (stopping ??= end()),
   };
+}
+
+function publish(client: MqttClient, seed: number, step: number): void {
+  if (!client.connected) return; // nothing is kept for later: it would arrive as if it were new
+  for (const channel of MQTT_CHANNELS) {
+    const i = instrumentAt(channel);
+    const value = readingAt(seed, i, step, true);
+    if (value === null) continue;
+    const payload = pointerOf(channel) === null ? String(value) : JSON.stringify({ value, unit: INSTRUMENTS[i]!.unit });
+    client.publish(topicOf(channel), payload, { qos: 1 });
+  }
+}
+
+/** A field is empty where its instrument sends nothing. */
+function lineAt(seed: number, step: number): string {
+  return `${LINE_CHANNELS.map((channel) => readingAt(seed, instrumentAt(channel), step, true) ?? '').join(',')}\n`;
 }
