@@ -53,6 +53,7 @@ describe('guard', () => {
     expect(logLines(log).map(({ event, channel, detector }) => [event, channel, detector])).toEqual([
       ['opened', undefined, undefined],
       ['raised', 'a', 'one-beyond-3'],
+      ['closed', undefined, undefined],
     ]);
     expect(statSync(log).mode & 0o777).toBe(0o640);
     expect(guard.stdout()).toBe('');
@@ -64,7 +65,7 @@ describe('guard', () => {
     const guard = kilter(['guard', stand]);
     guard.child.stdin.end('12.0,3.0\n11.0,3.0\n12.0,3.0\n12.0,3.0\n');
     expect(await guard.exit).toBe(0);
-    expect(logLines(log).map(({ event }) => event)).toEqual(['opened', 'raised', 'cleared']);
+    expect(logLines(log).map(({ event }) => event)).toEqual(['opened', 'raised', 'cleared', 'closed']);
   });
 
   it('begins a new log file on HUP, and the chain goes on', async () => {
@@ -79,7 +80,7 @@ describe('guard', () => {
     await guard.said(/"channel":"b"/);
     guard.child.kill('SIGTERM');
     expect(await guard.exit).toBe(0);
-    expect(logLines(log).map(({ event }) => event)).toEqual(['continued', 'cleared', 'raised']);
+    expect(logLines(log).map(({ event }) => event)).toEqual(['continued', 'cleared', 'raised', 'closed']);
     const verify = kilter(['verify', folder + '/alarms.jsonl', '--json']);
     expect(await verify.exit).toBe(0);
   });
