@@ -18,6 +18,7 @@ export function valueAxis({ band, trend, trendLength, tolerance }: ChannelView, 
   let high = -Infinity;
   for (let i = Math.max(0, trendLength - shown); i < trendLength; i++) {
     const value = trend[i]!;
+    if (!Number.isFinite(value)) continue; // off the scale: marked at the edge
     if (value < low) low = value;
     if (value > high) high = value;
   }
@@ -38,5 +39,6 @@ export function valueAxis({ band, trend, trendLength, tolerance }: ChannelView, 
     high += room;
   }
   const scale = (rows - 1) / (high - low);
-  return { low, high, y: (value) => Math.round((high - value) * scale) };
+  // rows far outside are cut, so that no later sum of them loses its meaning
+  return { low, high, y: (value) => Math.max(-1e6, Math.min(1e6, Math.round((high - value) * scale))) };
 }

@@ -5,7 +5,10 @@ import type { ChannelView } from './model.js';
 import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
 
-const GUTTER = 10; // columns for the labels of the value axis
+export const GUTTER = 10; // columns for the labels of the value axis
+
+/** Columns of the histogram at the right of the picture. */
+export const histogramWidth = (width: number): number => Math.max(14, Math.min(40, Math.floor((width - GUTTER) / 5)));
 
 /** Weights: what wins where things meet in a cell. */
 const ZONE = 1;
@@ -24,10 +27,10 @@ export function drawPicture(r: Raster, t: Theme, c: ChannelView, row: number, he
   const top = row * 4;
   const axis = valueAxis(c, span, height * 4);
   if (!axis) {
-    r.text(GUTTER, row + (height >> 1), c.state === 'waiting' ? 'Nothing has come yet.' : 'No reading that could be drawn.', t.faint);
+    r.text(GUTTER, row + (height >> 1), c.index < 0 && !c.stale ? 'Nothing has come from this channel yet.' : 'No reading that could be drawn.', t.faint);
     return;
   }
-  const aside = Math.max(12, Math.min(30, Math.floor((r.width - GUTTER) / 5)));
+  const aside = histogramWidth(r.width);
   const left = GUTTER * 2;
   const right = r.width * 2 - 1;
   const split = (r.width - aside) * 2;
@@ -50,41 +53,45 @@ function drawLines(r: Raster, t: Theme, { band, tolerance }: ChannelView, axis: 
   level(band.high, LIMIT, 4, 1, t.plain);
 }
 
-/** Least and greatest reading of each dot column, joined: as true as drawing every reading, at a cost bounded by the width. */
+/** Dots of the newest `span` readings: the newest at the right edge, each `step` to the left one older. */
+export const dotColumn = (age: number, span: number, left: number, right: number): number => right - Math.round((age * (right - left)) / Math.max(1, span - 1));
+
+/**
+ * Least and greatest reading of each dot column, joined from column to column: as true as drawing every reading, at a
+ * cost bounded by the width. Where dots are coarse, readings are points. Readings beyond a limit get a mark of their own.
+ */
 function drawTrend(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: number, left: number, right: number, span: number, height: number): void {
   const { trend, trendLength, band } = c;
   const shown = Math.min(span, trendLength);
-  const from = trendLength - shown;
-  const width = right - left;
   const bottom = height * 4 - 1;
-  let [column, low, high, last, before] = [-1, 0, 0, 0, NaN];
-  const inside = (y: number): number => Math.max(0, Math.min(bottom, y));
+  const inside = (y: number): number => top + Math.max(0, Math.min(bottom, y));
+  let [column, low, high, last, before] = [-1, 0, 0, 0, -1];
   const flush = (): void => {
     if (column < 0) return;
-    const [a, b] = [inside(axis.y(high)), inside(axis.y(low))];
-    r.upright(column, top + a, top + b, t.plain, DATA);
-    if (!Number.isNaN(before)) r.upright(column, top + inside(axis.y(before)), top + (axis.y(before) < a ? a : axis.y(before) > b ? b : inside(axis.y(before))), t.plain, DATA);
-    before = last;
+    r.upright(column, inside(axis.y(high)), inside(axis.y(low)), t.plain, DATA);
+    before = column;
   };
-  for (let i = 0; i < shown; i++) {
-    const value = trend[from + i]!;
-    const at = right - Math.round(((shown - 1 - i) * width) / Math.max(1, span - 1));
-    if (at !== column) {
+  for (let i = trendLength - shown; i < trendLength; i++) {
+    const value = trend[i]!;
+    if (Number.isNaN(value)) {
       flush();
+      [column, before] = [-1, -1]; // a gap
+      continue;
+    }
+    const at = dotColumn(trendLength - 1 - i, span, left, right);
+    if (!r.fine) r.dot(at, inside(axis.y(value)), t.plain, DATA);
+    else if (at !== column) {
+      flush();
+      if (before >= 0) r.line(before, inside(axis.y(last)), at, inside(axis.y(value)), t.plain, DATA);
       [column, low, high] = [at, value, value];
     } else if (value < low) low = value;
     else if (value > high) high = value;
     last = value;
-  }
-  flush();
-  if (!band) return;
-  for (let i = 0; i < shown; i++) {
-    const value = trend[from + i]!;
-    if (value <= band.high && value >= band.low) continue;
-    const at = right - Math.round(((shown - 1 - i) * width) / Math.max(1, span - 1));
+    if (!band || (value <= band.high && value >= band.low)) continue;
     const y = axis.y(value);
-    r.put(at >> 1, (top + inside(y)) >> 2, y < 0 ? '▴' : y > bottom ? '▾' : '●', t.alarm, DATA + 1);
+    r.put(at >> 1, inside(y) >> 2, y < 0 ? '▴' : y > bottom ? '▾' : '●', t.alarm, DATA + 1);
   }
+  if (r.fine) flush();
 }
 
 /** Readings counted by row of the picture, and the curve that the band promises for as many. */
@@ -92,26 +99,25 @@ function drawHistogram(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: num
   const { trend, trendLength, band } = c;
   const rows = height * 4;
   const shown = Math.min(span, trendLength);
+  for (let y = 0; y < rows; y++) r.dot(left - 2, top + y, t.faint, ZONE);
   if (shown === 0) return;
   const perRow = (axis.high - axis.low) / (rows - 1);
-  // A bin narrower than a quarter sigma shows noise, not shape: rows are gathered into bins.
-  const gather = band ? Math.max(2, Math.round((band.sigma * 0.3) / perRow)) : 4;
+  // A bin narrower than a third of a sigma shows noise, not shape: rows are gathered into bins.
+  const gather = band ? Math.max(2, Math.min(rows, Math.round((band.sigma * 0.35) / perRow))) : 4;
   const counts = new Float64Array(Math.ceil(rows / gather));
   for (let i = trendLength - shown; i < trendLength; i++) {
     const y = axis.y(trend[i]!);
     if (y >= 0 && y < rows) counts[Math.floor(y / gather)]!++;
   }
-  const expected = (y: number): number => {
-    if (!band) return 0;
-    const value = axis.high - y * perRow;
-    return (shown * gather * perRow * pdf((value - band.centre) / band.sigma)) / band.sigma;
-  };
-  const peak = Math.max(...counts, band ? (shown * gather * perRow * pdf(0)) / band.sigma : 0);
+  const scale = band ? (shown * gather * perRow) / band.sigma : 0;
+  const expected = (y: number): number => (band ? scale * pdf((axis.high - y * perRow - band.centre) / band.sigma) : 0);
+  const peak = Math.max(1, ...counts, scale * pdf(0));
   const reach = (count: number): number => Math.round((count / peak) * (right - left - 2));
   for (let y = 0; y < rows; y++) {
     const length = reach(counts[Math.floor(y / gather)]!);
-    if (length > 0 && (y % gather !== gather - 1 || gather < 3)) r.level(left, left + length, top + y, t.faint, BAR);
-    r.dot(left - 1, top + y, t.faint, ZONE);
+    // Bars are stippled, so that the curve and the limits stay visible where they run through them without colour.
+    for (let x = 0; x < length; x++) if (!r.fine || (x + y) % 2 === 0) r.dot(left + x, top + y, t.faint, BAR);
+    if (length > 0) r.dot(left + length - 1, top + y, t.faint, BAR);
   }
   if (!band) return;
   let last = reach(expected(0));

@@ -1,3 +1,5 @@
+import { clean } from '../text/clean.js';
+import { plainText } from './plain.js';
 import type { TerminalProfile } from './terminal.js';
 
 export const OWN = 0x1ff; // the terminal's own colour
@@ -34,8 +36,13 @@ export class Raster {
   private characters: (string | null)[] = [];
   private glyphs = GLYPHS.braille;
 
-  constructor(dots: TerminalProfile['dots'] = 'braille') {
-    this.glyphs = GLYPHS[dots];
+  constructor(readonly kind: TerminalProfile['dots'] = 'braille') {
+    this.glyphs = GLYPHS[kind];
+  }
+
+  /** Whether dots are fine enough for lines; else readings are drawn as points. */
+  get fine(): boolean {
+    return this.kind === 'braille';
   }
 
   resize(width: number, height: number): void {
@@ -107,10 +114,11 @@ export class Raster {
     this.weights[i] = weight;
   }
 
-  /** Text from a cell on, cut at `most` characters and at the edge. @returns the column after it */
+  /** Text from a cell on, cleaned (no text reaches a terminal raw), cut at `most` characters and at the edge. @returns the column after it */
   text(column: number, row: number, text: string, attrs: number, most = Infinity): number {
     let at = column;
-    for (const character of text) {
+    const safe = clean(text, 500);
+    for (const character of this.kind === 'ascii' ? plainText(safe) : safe) {
       if (at - column >= most || at >= this.width) break;
       this.put(at++, row, character, attrs);
     }

@@ -16,7 +16,12 @@ export interface Restorer {
  * it again around a stop (TSTP, CONT).
  * @param onSignal the terminal is already restored; the owner ends its work
  */
-export function restoreOnEnd(screen: BlessedScreen, onSignal: (signal: NodeJS.Signals) => void, onFatal: (error: unknown) => void): Restorer {
+export function restoreOnEnd(
+  screen: BlessedScreen,
+  output: NodeJS.WritableStream,
+  onSignal: (signal: NodeJS.Signals) => void,
+  onFatal: (error: unknown) => void,
+): Restorer {
   let done = false;
   const restore = (): void => {
     if (done) return;
@@ -26,7 +31,8 @@ export function restoreOnEnd(screen: BlessedScreen, onSignal: (signal: NodeJS.Si
     } catch {
       // a screen that is half built must not keep us from the reset below
     }
-    writeReset();
+    if (output === process.stdout) writeReset();
+    else output.write(RESET);
     try {
       raw(false);
     } catch {

@@ -1,78 +1,125 @@
 import { formatValue, formatZ } from '../engine/format.js';
-import type { ChannelView, StandView } from './model.js';
+import type { AlarmView, ChannelView, StandView } from './model.js';
 import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
 import type { Ui } from './ui.js';
 
-const REACH = 5; // sigmas to each side of the ruler
-const RULER = 21;
+const REACH = 4; // sigmas to each side of the ruler's centre
 const SPARK = '▁▂▃▄▅▆▇█';
 
-/** Name, state, value and place among its own sigmas of each channel: unlike quantities compare at a glance. */
+/** Columns of a row. */
+interface Columns {
+  readonly name: number;
+  readonly nameWidth: number;
+  readonly value: number;
+  readonly z: number;
+  readonly ruler: number;
+  /** Characters to a sigma. */
+  readonly perSigma: number;
+  readonly spark: number;
+  readonly sparkWidth: number;
+}
+
+const NAME = 14;
+const VALUE_AND_UNIT = 15;
+
+function columns(width: number, longest: number): Columns {
+  const perSigma = width >= 110 ? 4 : 2;
+  const nameWidth = Math.max(8, Math.min(width >= 110 ? 28 : Math.max(8, width - 64), longest));
+  const value = NAME + nameWidth + 1;
+  const z = value + VALUE_AND_UNIT + 1;
+  const ruler = z + 7;
+  const spark = ruler + 2 * REACH * perSigma + 3;
+  return { name: NAME, nameWidth, value, z, ruler, perSigma, spark, sparkWidth: Math.min(60, width - spark - 1) };
+}
+
+/** State, name, value and place among its own sigmas of each channel: unlike quantities compare at a glance. */
 export function drawRoster(r: Raster, t: Theme, view: StandView, ui: Ui, row: number, height: number, selected: number): void {
-  const names = Math.max(8, Math.min(24, ...[Math.max(...view.channels.map(({ channel }) => channel.length), 0)]));
+  if (view.channels.length === 0) {
+    r.text(1, row, 'This stand has no channels.', t.faint);
+    return;
+  }
+  const standing = standingByChannel(view);
+  const places = columns(r.width, view.channels.reduce((longest, { channel }) => Math.max(longest, channel.length), 0));
   for (let i = 0; i < height; i++) {
     const channel = view.channels[ui.first + i];
-    if (channel) drawRow(r, t, view, channel, row + i, names, ui.first + i === selected);
+    if (channel) drawRow(r, t, channel, standing.get(channel.channel) ?? null, row + i, places, ui.first + i === selected);
   }
-  if (view.channels.length === 0) r.text(1, row, 'This stand has no channels.', t.faint);
 }
 
-function drawRow(r: Raster, t: Theme, view: StandView, c: ChannelView, row: number, names: number, chosen: boolean): void {
-  const silent = c.state === 'alarm' && view.alarms.some(({ channel, detector, clearedAt }) => channel === c.channel && detector === 'silent' && clearedAt === null);
-  const [mark, word, attrs] = stateOf(t, c, silent);
+/** The newest standing alarm of each channel. */
+export function standingByChannel(view: StandView): Map<string, AlarmView> {
+  const newest = new Map<string, AlarmView>();
+  for (const alarm of view.alarms) if (alarm.clearedAt === null && !newest.has(alarm.channel)) newest.set(alarm.channel, alarm);
+  return newest;
+}
+
+function drawRow(r: Raster, t: Theme, c: ChannelView, alarm: AlarmView | null, row: number, places: Columns, chosen: boolean): void {
+  const [mark, word, attrs] = stateMark(t, c, alarm);
   r.put(0, row, chosen ? '▸' : ' ', t.strong);
   r.put(1, row, mark, attrs);
-  r.text(3, row, word.padEnd(9), attrs, 9);
-  r.text(13, row, c.channel, chosen ? t.strong : t.plain, names);
-  let at = 14 + names;
+  r.text(3, row, word, attrs, 10);
+  r.text(places.name, row, c.channel, chosen ? t.strong : t.plain, places.nameWidth);
   const value = c.value === null ? '-' : formatValue(c.value, c.band?.sigma ?? null, c.resolution);
-  r.text(at, row, value.padStart(9), c.stale ? t.faint : t.plain, 12);
-  r.text(at + 10, row, c.unit, t.faint, 7);
-  at += 18;
-  r.text(at, row, (c.z === null ? '' : `${formatZ(c.z)}σ`).padStart(7), c.state === 'alarm' ? t.alarm : t.plain, 8);
-  at += 8;
-  if (at + RULER <= r.width) drawRuler(r, t, c, at, row);
-  at += RULER + 1;
-  const room = r.width - at - 1;
-  if (room >= 6) drawSpark(r, t, c, at, row, room);
-}
-
-function stateOf(t: Theme, c: ChannelView, silent: boolean): readonly [mark: string, word: string, attrs: number] {
-  switch (c.state) {
-    case 'alarm':
-      return ['■', silent ? 'SILENT' : 'ALARM', t.alarm];
-    case 'settling':
-      return ['·', `settle ${c.settled ? Math.floor((100 * c.settled[0]) / c.settled[1]) : 0}%`, t.faint];
-    case 'waiting':
-      return ['·', c.stale ? 'old value' : 'waiting', t.faint];
-    case 'normal':
-      return [' ', 'normal', t.faint];
+  const after = r.text(places.value, row, value.padStart(8), c.stale ? t.note : t.plain, VALUE_AND_UNIT);
+  if (c.value !== null) r.text(after + 1, row, c.unit, t.faint, places.z - after - 2);
+  if (c.state === 'settling' && c.settled) drawProgress(r, t, c.settled, row, places);
+  else if (c.band) {
+    if (c.z !== null) r.text(places.z, row, `${formatZ(c.z)}σ`.padStart(6), alarm ? t.alarm : t.plain, 7);
+    drawRuler(r, t, c, alarm !== null, row, places);
+    drawSpark(r, t, c, row, places);
   }
 }
 
-/** A ruler in sigmas, the limits marked on it and the newest reading on top. */
-function drawRuler(r: Raster, t: Theme, { band, z, state }: ChannelView, column: number, row: number): void {
-  const place = (sigmas: number): number => column + Math.round(((Math.max(-REACH, Math.min(REACH, sigmas)) + REACH) / (2 * REACH)) * (RULER - 1));
-  for (let i = 0; i < RULER; i++) r.put(column + i, row, '·', t.faint, 1);
-  if (!band) return;
-  r.put(place(0), row, '┊', t.faint, 2);
-  for (const side of [-1, 1]) if (band.k <= REACH) r.put(place(side * band.k), row, '│', t.faint, 2);
-  if (z === null) return;
-  r.put(place(z), row, z > REACH ? '▸' : z < -REACH ? '◂' : '●', state === 'alarm' ? t.alarm : t.plain, 3);
+/** A channel's state as a shape and a word, and the attributes that go with both. */
+export function stateMark(t: Theme, c: ChannelView, alarm: AlarmView | null): readonly [mark: string, word: string, attrs: number] {
+  switch (c.state) {
+    case 'alarm':
+      if (alarm?.detector === 'silent') return ['■', 'SILENT', t.alarm];
+      if (alarm?.detector === 'frozen') return ['■', 'FROZEN', t.alarm];
+      if (alarm?.detector === 'off-scale') return ['■', 'OFF SCALE', t.alarm];
+      return ['■', alarm?.side ? `ALARM ${alarm.side}` : 'ALARM', t.alarm];
+    case 'settling':
+      return ['○', 'settling', t.note];
+    case 'waiting':
+      return ['○', c.stale ? 'old value' : 'waiting', t.note];
+    case 'normal':
+      return ['·', 'normal', t.faint];
+  }
 }
 
-/** The newest readings, each column their mean, in sigmas from -4 to 4. */
-function drawSpark(r: Raster, t: Theme, { band, trend, trendLength }: ChannelView, column: number, row: number, room: number): void {
-  if (!band) return;
-  const each = 5;
-  const columns = Math.min(room, Math.floor(trendLength / each));
-  for (let i = 0; i < columns; i++) {
-    let sum = 0;
-    const from = trendLength - (columns - i) * each;
-    for (let j = 0; j < each; j++) sum += trend[from + j]!;
-    const z = (sum / each - band.centre) / band.sigma;
-    const level = Math.max(0, Math.min(7, Math.floor(z + 4)));
-    r.put(column + i, row, SPARK[Number.isNaN(level) ? 0 : level]!, t.faint);
+/** How far a band has been learned, in the ruler's place. */
+function drawProgress(r: Raster, t: Theme, [taken, needed]: readonly [number, number], row: number, { z, ruler, perSigma }: Columns): void {
+  const words = `${taken}/${needed}`;
+  r.text(z, row, words.padStart(6), t.note, 11);
+  const from = Math.max(ruler, z + words.length + 1);
+  const length = ruler + 2 * REACH * perSigma - from;
+  const done = Math.round(length * Math.max(0, Math.min(1, taken / needed)));
+  for (let i = 0; i <= length; i++) r.put(from + i, row, i <= done ? '━' : '·', i <= done ? t.note : t.faint);
+}
+
+/** A ruler in sigmas: centre and limits marked, and the newest reading on top. */
+function drawRuler(r: Raster, t: Theme, { band, z }: ChannelView, alarmed: boolean, row: number, { ruler, perSigma }: Columns): void {
+  const place = (sigmas: number): number => ruler + Math.round((Math.max(-REACH, Math.min(REACH, sigmas)) + REACH) * perSigma);
+  for (let sigmas = -REACH; sigmas <= REACH; sigmas++) r.put(place(sigmas), row, '·', t.faint, 1);
+  r.put(place(0), row, '┊', t.faint, 2);
+  if (band && band.k <= REACH) for (const side of [-1, 1]) r.put(place(side * band.k), row, '│', t.faint, 2);
+  if (z === null || Number.isNaN(z)) return;
+  r.put(place(z), row, z > REACH ? '▸' : z < -REACH ? '◂' : '●', alarmed ? t.alarm : t.plain, 3);
+}
+
+/** The newest readings in sigmas from -4 to 4; a column shows the one of its readings that lies farthest out. */
+function drawSpark(r: Raster, t: Theme, { band, trend, trendLength }: ChannelView, row: number, { spark, sparkWidth }: Columns): void {
+  if (!band || sparkWidth < 5) return;
+  const each = 2;
+  const shown = Math.min(sparkWidth, Math.floor(trendLength / each));
+  for (let i = 0; i < shown; i++) {
+    let farthest = 0;
+    for (let j = 0; j < each; j++) {
+      const z = (trend[trendLength - (shown - i) * each + j]! - band.centre) / band.sigma;
+      if (Math.abs(z) > Math.abs(farthest)) farthest = z;
+    }
+    const level = Math.max(0, Math.min(SPARK.length - 1, Math.floor(farthest + SPARK.length / 2)));
+    r.put(spark + i, row, SPARK[level]!, Math.abs(farthest) > band.k ? t.alarm : t.faint);
   }
 }

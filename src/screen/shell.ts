@@ -89,6 +89,7 @@ export function openScreen(options: ScreenOptions): ScreenHandle {
   };
   const restorer = restoreOnEnd(
     screen,
+    output,
     (signal) => {
       close();
       options.onSignal(signal);

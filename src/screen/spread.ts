@@ -1,4 +1,5 @@
 import type { ChannelView } from './model.js';
+import { dotColumn, GUTTER, histogramWidth } from './picture.js';
 import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
 
@@ -7,12 +8,11 @@ const D4 = 3.2665319191953556; // upper limit of the moving range over its mean,
 
 /** The moving ranges of the readings shown: how rough the channel is, with their mean and limit as the band promises them. */
 export function drawSpread(r: Raster, t: Theme, c: ChannelView, row: number, height: number, span: number): void {
-  const gutter = 10;
-  r.text(0, row, 'spread'.padStart(gutter - 1), t.faint);
+  r.text(0, row, 'spread'.padStart(GUTTER - 1), t.faint);
   const { band, trend, trendLength } = c;
   if (!band || height === 0) return;
-  const aside = Math.max(12, Math.min(30, Math.floor((r.width - gutter) / 5)));
-  const left = gutter * 2;
+  const aside = histogramWidth(r.width);
+  const left = GUTTER * 2;
   const right = (r.width - aside) * 2 - 3;
   const rows = height * 4;
   const most = D2 * D4 * band.sigma * 1.15;
@@ -23,8 +23,9 @@ export function drawSpread(r: Raster, t: Theme, c: ChannelView, row: number, hei
   for (let i = 1; i < shown; i++) {
     const at = trendLength - shown + i;
     const range = Math.abs(trend[at]! - trend[at - 1]!);
-    const x = right - Math.round(((shown - 1 - i) * (right - left)) / Math.max(1, span - 1));
-    r.upright(x, y(range), row * 4 + rows - 1, t.faint, 3);
+    if (Number.isNaN(range)) continue;
+    r.upright(dotColumn(shown - 1 - i, span, left, right), y(range), row * 4 + rows - 1, t.faint, 3);
   }
-  r.text(r.width - aside + 1, row, 'moving range', t.faint, aside - 1);
+  r.text(r.width - aside + 1, row, 'reading to', t.faint, aside - 1);
+  r.text(r.width - aside + 1, row + 1, 'reading', t.faint, aside - 1);
 }

@@ -1,4 +1,5 @@
 import { blessed, type BlessedScreen } from './blessed.js';
+import { plainCell } from './plain.js';
 
 /** What a terminal can show. Decided here, and not by blessed, which cannot read today's terminal descriptions. */
 export interface TerminalProfile {
@@ -6,7 +7,7 @@ export interface TerminalProfile {
   readonly unusable: string | null;
   /** The description that blessed brings along itself and is to use. */
   readonly description: 'xterm' | 'xterm-256color' | 'linux';
-  readonly colours: 0 | 8 | 256;
+  readonly colours: 0 | 8 | 16 | 256;
   readonly unicode: boolean;
   /** Braille cells; else block elements (the Linux console has no braille), else ASCII. */
   readonly dots: 'braille' | 'block' | 'ascii';
@@ -20,22 +21,17 @@ export function terminalProfile(env: NodeJS.ProcessEnv): TerminalProfile {
   const unicode = /utf-?8/i.test(locale);
   const linux = term.startsWith('linux');
   const mono = (env['NO_COLOR'] ?? '') !== '' || /^(vt\d|ansi-m|xterm-mono)/.test(term);
+  const sixteen = /16color/.test(term);
   const many = /256color|direct|kitty|alacritty|ghostty|wezterm|foot/.test(term) || /truecolor|24bit/i.test(env['COLORTERM'] ?? '');
   return {
     unusable: term === '' ? 'TERM is not set' : term === 'dumb' || term === 'unknown' ? `TERM is '${term}'` : null,
-    description: linux ? 'linux' : many ? 'xterm-256color' : 'xterm',
-    colours: mono ? 0 : many ? 256 : 8,
+    description: linux ? 'linux' : many || sixteen ? 'xterm-256color' : 'xterm',
+    colours: mono ? 0 : many ? 256 : sixteen ? 16 : 8,
     unicode,
     dots: !unicode ? 'ascii' : linux ? 'block' : 'braille',
     mouse: !linux && !term.startsWith('vt'),
   };
 }
-
-/** ASCII stand-ins for the characters that views draw with. */
-const PLAIN: Readonly<Record<string, string>> = {
-  '●': '*', '■': '#', '□': '?', '▸': '>', '◂': '<', '┼': '+', '│': '|', '┊': ':', '─': '-', '·': '.', '…': '~', '±': '+', 'σ': 's', '−': '-',
-  '↑': '^', '↓': 'v', '█': '#', '▁': '_', '▂': '_', '▃': '.', '▄': '-', '▅': '-', '▆': '=', '▇': '^', '°': 'd', 'µ': 'u', 'μ': 'u', '²': '2', '³': '3', '×': 'x',
-};
 
 /** A blessed screen for the profile. Nothing but ASCII leaves it without UTF-8, and no colour without colours. */
 export function openBlessed(profile: TerminalProfile, input: NodeJS.ReadableStream, output: NodeJS.WritableStream): BlessedScreen {
@@ -65,8 +61,9 @@ export function openBlessed(profile: TerminalProfile, input: NodeJS.ReadableStre
       draw(start, end);
     };
   }
-  // SGR mouse reports and motion with a button only; blessed would ask for obsolete ones.
+  // SGR mouse reports and motion with a button only; blessed would ask for obsolete ones. Pastes are marked, so that they are no keys.
   screen.program.enableMouse = () => {
+    output.write('\x1b[?2004h');
     if (profile.mouse) screen.program.setMouse({ vt200Mouse: true, cellMotion: true, sgrMouse: true }, true);
   };
   return screen;
@@ -76,5 +73,5 @@ const NO_COLOURS = 0x3ffff; // both colours the terminal's own
 
 function plain(cell: [number, string], { colours, unicode }: TerminalProfile): void {
   if (colours === 0) cell[0] |= NO_COLOURS;
-  if (!unicode && cell[1] > '~') cell[1] = PLAIN[cell[1]] ?? '?';
+  if (!unicode && cell[1] > '~') cell[1] = plainCell(cell[1]);
 }
