@@ -1,5 +1,6 @@
 import { stirlingRemainder } from './gamma.js';
-import { between, cdf, pdf, upperTail } from './normal.js';
+import { lnBetween, upperTail } from './normal.js';
+import { peakedIntegral } from './peakedIntegral.js';
 import { integrate } from './quadrature.js';
 
 /**
@@ -15,18 +16,22 @@ export function c4(n: number): number {
   return Math.exp(exponent);
 }
 
-/** d2(n): the mean range of n normal readings, in sigmas (Tippett 1925). For whole n >= 2; NaN otherwise. */
+/** d2(n): the mean range of n normal readings, in sigmas (Tippett, Biometrika 17, 1925). For n >= 2; NaN below. */
 export function d2(n: number): number {
   if (!(n >= 2)) return NaN;
-  return 2 * integrate((x) => 1 - Math.pow(cdf(x), n) - Math.pow(upperTail(x), n), 0, 12, 12);
+  return 2 * integrate((x) => -Math.expm1(n * Math.log1p(-upperTail(x))) - Math.pow(upperTail(x), n), 0, 14, 20);
 }
 
-/** d3(n): the standard deviation of the range of n normal readings, in sigmas, from the density of the range. */
+/** d3(n): the standard deviation of the range of n normal readings, in sigmas, from the density of the range. For n >= 2; NaN below. */
 export function d3(n: number): number {
   if (!(n >= 2)) return NaN;
   const mean = d2(n);
-  // variance as the integral of (w - mean)^2 times the density n(n-1) integral of pdf(x) pdf(x+w) between(x,x+w)^(n-2)
-  const density = (w: number): number =>
-    n * (n - 1) * integrate((x) => pdf(x) * pdf(x + w) * Math.pow(between(x, x + w), n - 2), -9 - w / 2, 9 - w / 2, 6);
-  return Math.sqrt(integrate((w) => (w - mean) ** 2 * density(w), 0, 16, 8));
+  const variance = integrate((w) => (w - mean) ** 2 * rangeDensity(w, n), 0, mean + 10, Math.ceil(mean + 10));
+  return Math.sqrt(variance);
+}
+
+/** n (n - 1) times the integral of pdf(m - w/2) pdf(m + w/2) P(m - w/2 < Z < m + w/2)^(n - 2) over the midpoint m. */
+function rangeDensity(w: number, n: number): number {
+  const others = (m: number): number => Math.exp(-m * m + (n - 2) * lnBetween(m - w / 2, m + w / 2));
+  return ((n * (n - 1)) / (2 * Math.PI)) * Math.exp((-w * w) / 4) * peakedIntegral(others, 0, 0.5);
 }

@@ -1,4 +1,5 @@
 import { incompleteBeta } from './gamma.js';
+import { risingRoot } from './root.js';
 
 /** P(X <= x) for F with `a` and `b` degrees of freedom, both > 0. Abramowitz and Stegun 26.6.2. */
 export function fCdf(x: number, a: number, b: number): number {
@@ -28,21 +29,11 @@ export function fUpperQuantile(q: number, a: number, b: number): number {
   return solve(1 - q, q, a, b);
 }
 
-/** Bisection in ln x on the smaller tail until two neighbours are left, begun by doubling; slow, never wrong. */
+/** In the logarithms of x and of the smaller tail. */
 function solve(p: number, q: number, a: number, b: number): number {
   if (!(a > 0) || !(b > 0) || !(p >= 0 && p <= 1)) return NaN;
   if (p === 0) return 0;
   if (q === 0) return Infinity;
-  const tooLow = (x: number): boolean => (p <= q ? fCdf(x, a, b) < p : fUpperTail(x, a, b) > q);
-  let low = 0;
-  let high = 0;
-  for (let step = 1; tooLow(Math.exp(high)) && high < 700; step *= 2) high += step;
-  for (let step = 1; !tooLow(Math.exp(low)) && low > -700; step *= 2) low -= step;
-  for (let i = 0; i < 200; i++) {
-    const middle = (low + high) / 2;
-    if (middle === low || middle === high) break;
-    if (tooLow(Math.exp(middle))) low = middle;
-    else high = middle;
-  }
-  return Math.exp((low + high) / 2);
+  const h = p <= q ? (x: number) => Math.log(fCdf(Math.exp(x), a, b) / p) : (x: number) => -Math.log(fUpperTail(Math.exp(x), a, b) / q);
+  return Math.exp(risingRoot(h, 0, Math.min(1, Math.sqrt(2 / a + 2 / b))));
 }

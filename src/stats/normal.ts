@@ -1,27 +1,55 @@
 /**
  * The standard normal distribution, to a few units in the last place over the whole range of doubles, both tails included.
  * Methods: series 26.2.11 and continued fraction 26.2.14 of Abramowitz and Stegun, Handbook of Mathematical Functions
- * (1964); the exponential of the square is split so that no digit is lost far out; quantiles by Halley's iteration on
- * the logarithm of the tail.
+ * (1964); between them a rational Chebyshev approximation of Cody, Mathematics of Computation 23 (1969), as in ACM
+ * Algorithm 715; the exponential of the square is split so that no digit is lost far out; quantiles by Halley's
+ * iteration on the logarithm of the tail.
  */
 const INV_SQRT_2PI = 0.3989422804014327;
 const LN_SQRT_2PI = 0.9189385332046727;
+const NO_DOUBLE = 39; // sigmas beyond which density and tail are below the smallest double
 
-/** exp(-z^2 / 2): z^2 = h^2 + (z - h)(z + h) with h^2 exact. */
-function expHalfSquare(z: number): number {
+const CODY_FROM = 0.67;
+const CODY_TO = 5.65;
+const CODY_ABOVE = [
+  0.39894151208813466764, 8.8831497943883759412, 93.506656132177855979, 597.27027639480026226, 2494.5375852903726711, 6848.1904505362823326,
+  11602.651437647350124, 9842.7148383839780218,
+];
+const CODY_LAST = 1.0765576773720192317e-8;
+const CODY_BELOW = [
+  22.266688044328115691, 235.38790178262499861, 1519.377599407554805, 6485.558298266760755, 18615.571640885098091, 34900.952721145977266,
+  38912.003286093271411, 19685.429676859990727,
+];
+
+/** exp(-z^2 / 4) twice over, and what is left of exp(-z^2 / 2): z^2 = h^2 + (z - h)(z + h) with h^2 exact. */
+function scaledExponential(z: number, factor: number): number {
   const h = Math.trunc(z * 16) / 16;
-  return Math.exp((-h * h) / 2) * Math.exp((-(z - h) * (z + h)) / 2);
+  const root = Math.exp((-h * h) / 4);
+  return root * Math.exp((-(z - h) * (z + h)) / 2) * factor * root; // rounds once where the result is subnormal
 }
 
 /** Density at z. */
 export function pdf(z: number): number {
-  return INV_SQRT_2PI * expHalfSquare(Math.abs(z));
+  return scaledExponential(Math.min(Math.abs(z), NO_DOUBLE), INV_SQRT_2PI);
 }
 
-/** (1 - cdf(z)) / pdf(z) for z >= 2, by the continued fraction evaluated backwards. */
+/** exp(z^2 / 2) P(Z > z) for z >= 0.67: Cody's rational approximation, beyond 5.65 the continued fraction evaluated backwards. */
+function scaledTail(z: number): number {
+  if (z > CODY_TO) return INV_SQRT_2PI * mills(z);
+  let above = CODY_LAST * z;
+  let below = z;
+  for (let i = 0; i < 7; i++) {
+    above = (above + CODY_ABOVE[i]!) * z;
+    below = (below + CODY_BELOW[i]!) * z;
+  }
+  return (above + CODY_ABOVE[7]!) / (below + CODY_BELOW[7]!);
+}
+
+/** P(Z > z) / pdf(z), for z >= 0.67. */
 function mills(z: number): number {
+  if (z <= CODY_TO) return scaledTail(z) / INV_SQRT_2PI;
   let f = z;
-  for (let k = z > 10 ? 20 : z > 5 ? 45 : z > 3 ? 90 : 170; k >= 1; k--) f = z + k / f;
+  for (let k = z > 10 ? 20 : 45; k >= 1; k--) f = z + k / f;
   return 1 / f;
 }
 
@@ -37,11 +65,11 @@ function central(z: number): number {
   return pdf(z) * sum;
 }
 
-/** P(Z > z). Full relative precision however small. */
+/** P(Z > z). Full relative precision however small, down to the smallest double. */
 export function upperTail(z: number): number {
   if (z !== z) return NaN;
-  if (z >= 2) return z === Infinity ? 0 : pdf(z) * mills(z);
-  if (z <= -2) return 1 - upperTail(-z);
+  if (z >= CODY_FROM) return z > NO_DOUBLE ? 0 : scaledExponential(z, scaledTail(z));
+  if (z <= -CODY_FROM) return 1 - upperTail(-z);
   return 0.5 - central(z);
 }
 
@@ -65,29 +93,31 @@ export function logUpperTail(z: number): number {
 /** P(a < Z < b) without cancellation; 0 where a >= b. */
 export function between(a: number, b: number): number {
   if (!(a < b)) return a !== a || b !== b ? NaN : 0;
-  if (a >= 2) return tailDifference(a, b);
-  if (b <= -2) return tailDifference(-b, -a);
-  if (a > -2 && b < 2) return narrow(a, b);
+  const width = b - a;
+  const nearest = a > 0 ? a : b < 0 ? -b : 0;
+  if (width * (1 + nearest) < 0.1) return narrow(a, b);
+  if (a > -1 && b < 1) return central(b) - central(a);
   if (a >= 0) return upperTail(a) - upperTail(b);
   if (b <= 0) return cdf(b) - cdf(a);
   return 1 - cdf(a) - upperTail(b);
 }
 
-/** upperTail(a) - upperTail(b) for 2 <= a < b: the common exponential is taken out, narrow intervals go by the midpoint series. */
-function tailDifference(a: number, b: number): number {
-  if (b - a < 1e-2 / (1 + a)) return narrow(a, b);
-  return upperTail(a) - upperTail(b);
+/** ln P(a < Z < b), precise also where nearly all readings lie between. */
+export function lnBetween(a: number, b: number): number {
+  const outside = cdf(a) + upperTail(b);
+  return outside < 0.5 ? Math.log1p(-outside) : Math.log(between(a, b));
 }
 
-/** P(a < Z < b) for intervals that are short or near the centre. */
+/** P(a < Z < b) for short intervals: Taylor's series about the midpoint, whose odd terms vanish; Hermite polynomials He2 to He8. */
 function narrow(a: number, b: number): number {
   const half = (b - a) / 2;
-  if (half * (1 + Math.abs(a)) > 0.05) return central(b) - central(a);
-  // Taylor about the midpoint; the odd derivatives vanish: Hermite polynomials He2, He4, He6.
   const m = a + half;
   const s = m * m;
   const h2 = half * half;
-  const series = 1 + (h2 / 6) * (s - 1 + (h2 / 20) * (s * s - 6 * s + 3 + (h2 / 42) * (s * s * s - 15 * s * s + 45 * s - 15)));
+  const he4 = s * s - 6 * s + 3;
+  const he6 = s * s * s - 15 * s * s + 45 * s - 15;
+  const he8 = s * s * s * s - 28 * s * s * s + 210 * s * s - 420 * s + 105;
+  const series = 1 + (h2 / 6) * (s - 1 + (h2 / 20) * (he4 + (h2 / 42) * (he6 + (h2 / 72) * he8)));
   return 2 * half * pdf(m) * series;
 }
 
@@ -104,7 +134,7 @@ export function upperQuantile(q: number): number {
   const t = Math.sqrt(-2 * Math.log(q));
   let z = t - (2.515517 + t * (0.802853 + t * 0.010328)) / (1 + t * (1.432788 + t * (0.189269 + t * 0.001308)));
   for (let i = 0; i < 4; i++) {
-    const ratio = z >= 2 ? mills(z) : upperTail(z) / pdf(z);
+    const ratio = z >= CODY_FROM ? mills(z) : upperTail(z) / pdf(z);
     const gap = z < 37 ? Math.log(upperTail(z) / q) : logUpperTail(z) - Math.log(q);
     const step = -gap * ratio; // Newton's step in ln q, then the second-order term
     const z1 = step * (1 + (step * (z - 1 / ratio)) / 2);

@@ -1,4 +1,4 @@
-import { between, cdf, pdf, upperTail } from './normal.js';
+import { cdf, lnBetween, pdf, upperTail } from './normal.js';
 import { peakedIntegral, peakFrom } from './peakedIntegral.js';
 
 /**
@@ -12,10 +12,7 @@ const NO_DOUBLE = 80; // sigmas beyond which the upper tail is below the smalles
 export function rangeCdf(w: number, n: number): number {
   if (!(w > 0)) return 0;
   if (w > NO_DOUBLE) return 1;
-  const lnOthers = (x: number): number => {
-    const outside = upperTail(x) + cdf(x - w);
-    return (n - 1) * (outside < 0.5 ? Math.log1p(-outside) : Math.log(between(x - w, x)));
-  };
+  const lnOthers = (x: number): number => (n - 1) * lnBetween(x - w, x);
   const peak = peakFrom((x) => (-x * x) / 2 + lnOthers(x), 0, 1, firstStep(n) / 2); // lies in 0..w/2
   return Math.min(1, n * peakedIntegral((x) => pdf(x) * Math.exp(lnOthers(x)), peak, firstStep(n)));
 }

@@ -1,8 +1,10 @@
 import { incompleteBeta, stirlingRemainder } from './gamma.js';
-import { upperQuantile } from './normal.js';
+import { pdf, upperQuantile, upperTail } from './normal.js';
 
-/** Student's t with `df` > 0 degrees of freedom (not only whole ones). NaN outside the domain. */
+/** Student's t with `df` > 0 degrees of freedom (not only whole ones; Infinity: the normal). NaN outside the domain. */
 export function tPdf(t: number, df: number): number {
+  if (!(df > 0)) return NaN;
+  if (df === Infinity) return pdf(t);
   const exponent =
     ((df + 1) / 2) * -Math.log1p((t * t) / df) + stirlingRemainder((df + 1) / 2) - stirlingRemainder(df / 2) + (df / 2) * Math.log1p(1 / df) - 0.5;
   return Math.exp(exponent) / Math.sqrt(2 * Math.PI);
@@ -11,6 +13,7 @@ export function tPdf(t: number, df: number): number {
 /** P(T > t). Abramowitz and Stegun 26.7.1, through the incomplete beta function. */
 export function tUpperTail(t: number, df: number): number {
   if (!(df > 0) || t !== t) return NaN;
+  if (df === Infinity) return upperTail(t);
   if (t < 0) return 1 - tUpperTail(-t, df);
   if (t < 1e-160) return 0.5;
   const square = t * t;
@@ -33,6 +36,7 @@ function half(t: number, df: number): number {
 /** t with P(T > t) = q. Start: Cornish-Fisher (26.7.5) or the power law of the tail; then Newton in ln q, ln t. */
 export function tUpperQuantile(q: number, df: number): number {
   if (!(df > 0) || !(q >= 0 && q <= 1)) return NaN;
+  if (df === Infinity) return upperQuantile(q);
   if (q > 0.5) return -tUpperQuantile(1 - q, df);
   if (q === 0.5) return 0;
   if (q === 0) return Infinity;
@@ -67,6 +71,6 @@ function centralQuantile(p: number, df: number): number {
 
 /** t with P(T <= t) = p. Far upper tails lose digits in 1 - p: ask `tUpperQuantile` for them. */
 export function tQuantile(p: number, df: number): number {
-  if (p > 0.3 && p < 0.7) return p === 0.5 ? 0 : centralQuantile(p - 0.5, df);
+  if (p > 0.3 && p < 0.7 && df > 0 && df < Infinity) return p === 0.5 ? 0 : centralQuantile(p - 0.5, df);
   return -tUpperQuantile(p, df);
 }
