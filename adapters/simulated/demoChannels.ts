@@ -44,9 +44,9 @@ export const pointerOf = (channel: string): string | null => (channel === 'suppl
 /**
  * Textbook zones would cry wolf every 1.5 s on these six channels together (60 readings a second, one false alarm in
  * 91.75 readings). Stretched by 1.8, with a run of 24 on one side and without `four-of-five-beyond-1` (the rule that costs
- * most at this rate), they give 0.05 false alarms an hour if the bands were known exactly, and 0.15 an hour with bands
- * learned from 200 readings, on the average over what may be learned: one in about 7 hours. demoChannels' test
- * computes both.
+ * most at this rate), they give 0.05 false alarms an hour if the bands were known exactly, and 0.12 an hour with bands
+ * learned from 200 readings, on the average over what may be learned: one in about 8 hours.
+ * tests/adapters/simulatedDemo.test.ts computes both.
  */
 const WATCH = { k: 5.4, rules: ['one-beyond-3', 'two-of-three-beyond-2', 'eight-one-side'], sideRun: 24 } as const;
 
