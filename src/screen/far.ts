@@ -1,5 +1,6 @@
-import type { StandView } from './model.js';
+import type { ChannelView, StandView } from './model.js';
 import type { Raster } from './raster.js';
+import { standingByChannel, stateMark } from './roster.js';
 import type { Theme } from './theme.js';
 
 /** Letters of three by five, a row of each in three bits, top row first. */
@@ -10,22 +11,43 @@ const FONT: Readonly<Record<string, string>> = {
   '-': '00700', '.': '00002', ' ': '00000',
 };
 
-/** The state of the stand in letters that can be read from across the room, and what is wrong below. */
+/** The state of the stand in letters that can be read from across the room, those of the channels in alarm, and a word for each. */
 export function drawFar(r: Raster, t: Theme, view: StandView, row: number, height: number): void {
   const alarmed = view.channels.filter(({ state }) => state === 'alarm');
-  const settling = view.channels.filter(({ state }) => state === 'settling' || state === 'waiting').length;
-  const words = alarmed.length > 0 ? `${alarmed.length} IN ALARM` : settling > 0 ? 'SETTLING' : 'ALL WELL';
+  const settling = view.channels.filter(({ state }) => state === 'settling' || state === 'waiting');
+  const rest = view.channels.filter(({ state }) => state === 'normal');
+  const words = alarmed.length > 0 ? `${alarmed.length} IN ALARM` : settling.length > 0 ? 'SETTLING' : view.channels.length > 0 ? 'ALL WELL' : 'NO CHANNELS';
   const attrs = alarmed.length > 0 ? t.alarm : t.plain;
+  const bottom = row + height;
   const scale = Math.max(1, Math.min(Math.floor(r.width / (words.length * 8)), Math.floor(height / 12)));
   let at = row + 1;
   at += banner(r, words, at, scale, attrs) + 1;
   for (const { channel } of alarmed) {
-    if (at + 5 > row + height) {
-      r.text(2, row + height - 1, `and ${alarmed.length - alarmed.findIndex((c) => c.channel === channel)} more`, t.alarm);
-      return;
-    }
-    at += banner(r, channel.toUpperCase(), at, 1, t.plain) + 1;
+    if (at + 8 > bottom) break;
+    at += banner(r, channel.toUpperCase(), at, 1, t.strong) + 1;
   }
+  drawStates(r, t, view, [...alarmed, ...settling, ...rest], at, bottom - at);
+}
+
+const COLUMN = 38;
+
+/** A shape, a word and the name of each channel, the pressing ones first. */
+function drawStates(r: Raster, t: Theme, view: StandView, channels: readonly ChannelView[], row: number, height: number): void {
+  if (height <= 0) return;
+  const across = Math.max(1, Math.floor((r.width - 2) / COLUMN));
+  const alarms = standingByChannel(view);
+  const room = across * height;
+  const shown = channels.length > room ? room - 1 : channels.length;
+  for (let i = 0; i < shown; i++) {
+    const channel = channels[i]!;
+    const [mark, word, attrs] = stateMark(t, channel, alarms.get(channel.channel) ?? null);
+    const column = 2 + (i % across) * COLUMN;
+    const y = row + Math.floor(i / across);
+    r.put(column, y, mark, attrs);
+    r.text(column + 2, y, word, attrs, 11);
+    r.text(column + 14, y, channel.channel, t.plain, COLUMN - 16);
+  }
+  if (shown < channels.length) r.text(2 + (shown % across) * COLUMN, row + height - 1, `and ${channels.length - shown} more`, t.faint);
 }
 
 /** @returns rows taken */

@@ -8,6 +8,8 @@ import { drawPicture } from './picture.js';
 import type { Raster } from './raster.js';
 import { drawRoster } from './roster.js';
 import { drawSpread } from './spread.js';
+import { standing, stateWords } from './stateWords.js';
+import { drawHint, drawStatus } from './statusLine.js';
 import type { Theme } from './theme.js';
 import { selectedIndex, type Ui } from './ui.js';
 
@@ -16,8 +18,8 @@ export function drawFrame(r: Raster, t: Theme, view: StandView, ui: Ui): Layout 
   const places = layout(r.width, r.height, view.channels.length);
   r.clear();
   if (r.width < SMALLEST.width || r.height < SMALLEST.height) {
-    r.text(0, 0, `kilter needs ${SMALLEST.width}x${SMALLEST.height}; this is ${r.width}x${r.height}.`, t.plain);
-    r.text(0, 1, stateWords(view), standing(view) > 0 ? t.alarm : t.plain);
+    const alarms = standing(view);
+    r.text(0, 0, `${alarms > 0 ? `■ ${alarms} ALARM${alarms > 1 ? 'S' : ''}. ` : ''}Too small: ${r.width}x${r.height}, needs ${SMALLEST.width}x${SMALLEST.height}.`, alarms > 0 ? t.alarm : t.plain);
     return places;
   }
   const selected = selectedIndex(view, ui);
@@ -36,25 +38,10 @@ export function drawFrame(r: Raster, t: Theme, view: StandView, ui: Ui): Layout 
     if (ui.figures && channel) drawFigures(r, t, channel, ...places.lower);
     else drawAlarms(r, t, view, ...places.lower);
   }
-  drawHint(r, t, view, ui, places.hint);
+  drawHint(r, t, view, ui, places.hint, selected);
   drawStatus(r, t, view, ui, places.status);
   if (ui.help) drawHelp(r, t);
   return places;
-}
-
-const standing = (view: StandView): number => view.alarms.filter(({ clearedAt }) => clearedAt === null).length;
-
-/** The state of the stand in words. */
-export function stateWords(view: StandView): string {
-  const alarms = standing(view);
-  const total = view.channels.length;
-  if (alarms > 0) {
-    const channels = view.channels.filter(({ state }) => state === 'alarm').length;
-    return `${alarms} ${alarms === 1 ? 'alarm stands' : 'alarms stand'} on ${channels} of ${total} ${total === 1 ? 'channel' : 'channels'}`;
-  }
-  const settling = view.channels.filter(({ state }) => state === 'settling' || state === 'waiting').length;
-  if (settling > 0) return settling === total ? 'settling: bands are being learned' : `${settling} of ${total} channels settling, the others in their bands`;
-  return total === 1 ? 'the channel is in its band' : `all ${total} channels are in their bands`;
 }
 
 function drawHeader(r: Raster, t: Theme, view: StandView, ui: Ui): void {
@@ -63,7 +50,7 @@ function drawHeader(r: Raster, t: Theme, view: StandView, ui: Ui): void {
   const alarmed = standing(view) > 0;
   let at = r.text(0, 0, view.stand, t.strong, Math.max(10, r.width - words.length - clock.length - 8));
   at = r.text(at + 2, 0, alarmed ? `■ ${words}` : words, alarmed ? t.alarm : t.plain, r.width - at - clock.length - 4);
-  if (ui.held) r.text(at + 2, 0, 'held', t.caution, r.width - at - clock.length - 3);
+  if (ui.held) r.text(at + 2, 0, 'held', t.note, r.width - at - clock.length - 3);
   r.text(r.width - clock.length, 0, clock, t.faint);
 }
 
@@ -81,31 +68,4 @@ function drawTitle(r: Raster, t: Theme, view: StandView, ui: Ui, places: Layout,
     const more = ` ${ui.first} above, ${Math.max(0, below)} below `;
     r.text(r.width - more.length - 2, places.title, more, t.faint);
   }
-}
-
-function drawHint(r: Raster, t: Theme, view: StandView, ui: Ui, row: number): void {
-  const parts = ui.far
-    ? ['? help', 'q quit', 'f back']
-    : ['? help', 'q quit', '↑↓ choose', `Enter ${ui.figures ? 'alarms' : 'figures'}`, ui.held ? 'space go on' : 'space hold', 'f far view', '+ - span'];
-  if (standing(view) > 0) parts.splice(2, 0, 'n next alarm');
-  r.text(1, row, parts.join('   '), t.faint, r.width - 2);
-}
-
-function drawStatus(r: Raster, t: Theme, view: StandView, ui: Ui, row: number): void {
-  if (view.logTrouble) {
-    r.text(0, row, `■ ${view.logTrouble}`, t.alarm);
-    return;
-  }
-  const down = view.sources.filter(({ phase }) => phase === 'lost' || phase === 'connecting');
-  const [first] = down;
-  if (first && first.phase === 'lost') {
-    r.text(1, row, `▸ ${first.source}: ${first.sentence}${down.length > 1 ? ` (and ${down.length - 1} more)` : ''}`, t.caution);
-    return;
-  }
-  const open = view.sources.filter(({ phase }) => phase === 'open').length;
-  const faults = view.sources.reduce((sum, source) => sum + source.faults, 0);
-  const words = `${open} of ${view.sources.length} sources open   ${view.rate.toFixed(view.rate < 10 ? 1 : 0)} readings/s${faults > 0 ? `   ${faults} unreadable` : ''}`;
-  const at = r.text(1, row, words, t.faint);
-  const said = ui.message ?? view.notice;
-  if (said !== null) r.text(at + 3, row, said, ui.message ? t.plain : t.faint);
 }

@@ -14,11 +14,11 @@ export interface Layout {
 
 export const SMALLEST = { width: 60, height: 16 } as const;
 
-/** Shares out the rows: the roster takes what its channels need up to a third, alarms a fifth, the picture the rest. */
+/** Shares out the rows: the roster takes what its channels need up to a third, alarms a sixth, the picture the rest. */
 export function layout(width: number, height: number, channels: number): Layout {
   const inner = height - 4; // header, title, hint, status
   const roster = Math.max(1, Math.min(channels, Math.floor(inner / 3)));
-  const lower = Math.max(3, Math.floor(inner / 5));
+  const lower = Math.max(4, Math.floor(inner / 6));
   const spread = inner - roster - lower >= 14 ? 3 : 0;
   const picture = inner - roster - lower - spread;
   const title = 1 + roster;

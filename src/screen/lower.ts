@@ -1,5 +1,5 @@
 import { formatDuration, formatOdds, formatValue, formatZ } from '../engine/format.js';
-import type { ChannelView, StandView } from './model.js';
+import type { AlarmView, ChannelView, StandView } from './model.js';
 import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
 
@@ -23,9 +23,15 @@ export function drawAlarms(r: Raster, t: Theme, view: StandView, row: number, he
     const age = formatDuration(Math.max(0, view.now - (alarm.clearedAt ?? alarm.since)));
     const attrs = over ? t.faint : t.alarm;
     r.put(1, at, over ? '·' : '■', attrs);
-    r.text(3, at, over ? `over ${age}` : age, attrs, 14);
-    at += wrapped(r, alarm.sentence, 18, at, r.width - 19, over ? t.faint : t.plain, over ? 1 : Math.min(left, 2));
+    r.text(3, at, over ? `over ${age.split(' ').slice(0, 2).join(' ')}` : age, attrs, 14);
+    at += wrapped(r, words(alarm), 17, at, r.width - 18, over ? t.faint : t.plain, over ? 1 : Math.min(left, 2));
   }
+}
+
+/** The sentence, with the odds where it does not tell them, and how often the alarm has been signalled. */
+function words({ sentence, odds, signals, clearedAt }: AlarmView): string {
+  const chance = odds === null || sentence.includes('1 in ') ? '' : ` (${formatOdds(odds)})`;
+  return `${sentence}${chance}${clearedAt === null && signals > 1 ? ` ${signals} signals.` : ''}`;
 }
 
 /** Text over at most so many rows, broken at blanks. @returns the rows taken */
@@ -46,36 +52,36 @@ function wrapped(r: Raster, text: string, column: number, row: number, width: nu
 
 /** The chosen channel in figures: its band and how well it is known, and the rolling window. */
 export function drawFigures(r: Raster, t: Theme, c: ChannelView, row: number, height: number): void {
-  const { band, window: w, unit } = c;
-  const u = unit && ` ${unit}`;
+  const { band, window: w } = c; // the unit stands in the title above
   const value = (x: number): string => formatValue(x, band?.sigma ?? null, c.resolution);
   const fine = (x: number): string => formatValue(x, (band?.sigma ?? Math.abs(x)) / 5);
   const pairs: [string, string][] = [];
   if (band) {
     pairs.push(
       ['band', `${band.origin}${band.n === null ? '' : `, n ${band.n}`}`],
-      ['centre', `${fine(band.centre)}${band.centreUncertainty === null ? '' : ` ± ${fine(band.centreUncertainty)}`}${u}`],
-      ['sigma', `${fine(band.sigma)}${band.sigmaUncertainty === null ? '' : ` ± ${fine(band.sigmaUncertainty)}`}${u}`],
-      ['limits', `${value(band.low)} to ${value(band.high)}${u}, ${band.k} sigma`],
+      ['centre', `${fine(band.centre)}${band.centreUncertainty === null ? '' : ` ± ${fine(band.centreUncertainty)}`}`],
+      ['sigma', `${fine(band.sigma)}${band.sigmaUncertainty === null ? '' : ` ± ${fine(band.sigmaUncertainty)}`}`],
+      ['limits', `${value(band.low)} to ${value(band.high)} (${band.k}σ)`],
     );
-  } else pairs.push(['band', 'not yet: settling']);
-  pairs.push(['newest', c.z === null || c.odds === null ? '-' : `${formatZ(c.z)} sigma, ${formatOdds(c.odds)}`]);
+  } else pairs.push(['band', c.settled ? `${c.settled[0]} of ${c.settled[1]} readings` : 'none']);
+  pairs.push(['newest', c.z === null || c.odds === null ? '-' : `${formatZ(c.z)}σ, ${formatOdds(c.odds)}`]);
   if (w)
     pairs.push(
       ['window', `${w.n} readings`],
-      ['mean', `${fine(w.mean)}${u}`],
-      ['sd', `${fine(w.sd)}${u}`],
-      ['median', `${fine(w.median)}${u}`],
-      ['MAD', `${fine(w.mad)}${u}`],
-      ['min, max', `${value(w.min)}, ${value(w.max)}${u}`],
+      ['mean', fine(w.mean)],
+      ['sd', fine(w.sd)],
+      ['median', fine(w.median)],
+      ['MAD', fine(w.mad)],
+      ['min, max', `${value(w.min)}, ${value(w.max)}`],
       ['lag-1', c.lag1 === null || Number.isNaN(c.lag1) ? '-' : c.lag1.toFixed(3)],
     );
-  const columns = Math.max(1, Math.ceil(pairs.length / height));
-  const width = Math.max(20, Math.floor((r.width - 2) / columns));
-  for (const [i, [name, text]] of pairs.entries()) {
-    const column = 1 + Math.floor(i / height) * width;
-    if (column >= r.width) return;
-    r.text(column, row + (i % height), name.padEnd(9), t.faint);
-    r.text(column + 9, row + (i % height), text, t.plain, width - 10);
+  const NAMES = 9;
+  for (let first = 0, column = 1; first < pairs.length && column < r.width; first += height) {
+    const group = pairs.slice(first, first + height);
+    group.forEach(([name, text], i) => {
+      r.text(column, row + i, name, t.faint);
+      r.text(column + NAMES, row + i, text, t.plain);
+    });
+    column += NAMES + 3 + group.reduce((widest, [, text]) => Math.max(widest, text.length), 0);
   }
 }

@@ -79,7 +79,7 @@ function drawTrend(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: number,
       continue;
     }
     const at = dotColumn(trendLength - 1 - i, span, left, right);
-    if (!r.fine) r.dot(at, inside(axis.y(value)), t.plain, DATA);
+    if (!r.fine) r.put(at >> 1, inside(axis.y(value)) >> 2, '•', t.plain, DATA);
     else if (at !== column) {
       flush();
       if (before >= 0) r.line(before, inside(axis.y(last)), at, inside(axis.y(value)), t.plain, DATA);

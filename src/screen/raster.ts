@@ -114,15 +114,15 @@ export class Raster {
     this.weights[i] = weight;
   }
 
-  /** Text from a cell on, cleaned (no text reaches a terminal raw), cut at `most` characters and at the edge. @returns the column after it */
+  /** Text from a cell on, cleaned (no text reaches a terminal raw), cut with an ellipsis at `most` characters or at the edge. @returns the column after it */
   text(column: number, row: number, text: string, attrs: number, most = Infinity): number {
-    let at = column;
+    const room = Math.max(0, Math.min(most, this.width - column));
     const safe = clean(text, 500);
-    for (const character of this.kind === 'ascii' ? plainText(safe) : safe) {
-      if (at - column >= most || at >= this.width) break;
-      this.put(at++, row, character, attrs);
-    }
-    return at;
+    const words = this.kind === 'ascii' ? plainText(safe) : safe;
+    const cut = words.length > room;
+    const length = cut ? room : words.length;
+    for (let i = 0; i < length; i++) this.put(column + i, row, cut && i === length - 1 && room > 3 ? '…' : words[i]!, attrs);
+    return column + length;
   }
 
   /** Empties a rectangle, for what is laid over the picture. */

@@ -65,13 +65,15 @@ export function openScreen(options: ScreenOptions): ScreenHandle {
   let places: Layout | null = null;
   let messageUntil = 0;
   let open = true;
+  let drawn = false;
 
   new RasterCanvas(screen, raster, () => (places = drawFrame(raster, colours, view, ui))).attach();
   const draw = (): void => {
     if (!open || output.writableLength > 0) return; // a slow terminal is given fewer frames, never a queue
     try {
       if (ui.message && performance.now() > messageUntil) ui.message = null;
-      view = heldView ?? options.view();
+      if (drawn) view = heldView ?? options.view(); // once a frame
+      drawn = true;
       const channel = view.channels[selectedIndex(view, ui)];
       if (channel) options.select(channel.channel);
       screen.render();

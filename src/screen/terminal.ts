@@ -1,5 +1,5 @@
 import { blessed, type BlessedScreen } from './blessed.js';
-import { plainCell } from './plain.js';
+import { consoleCell, plainCell } from './plain.js';
 
 /** What a terminal can show. Decided here, and not by blessed, which cannot read today's terminal descriptions. */
 export interface TerminalProfile {
@@ -51,7 +51,7 @@ export function openBlessed(profile: TerminalProfile, input: NodeJS.ReadableStre
     sendFocus: false,
   }) as unknown as BlessedScreen;
   screen.tput.brokenACS = true; // line drawing as plain characters
-  if (profile.colours === 0 || !profile.unicode) {
+  if (profile.colours === 0 || profile.dots !== 'braille') {
     const draw = screen.draw.bind(screen);
     screen.draw = (start, end) => {
       for (let y = start; y <= end; y++) {
@@ -71,7 +71,8 @@ export function openBlessed(profile: TerminalProfile, input: NodeJS.ReadableStre
 
 const NO_COLOURS = 0x3ffff; // both colours the terminal's own
 
-function plain(cell: [number, string], { colours, unicode }: TerminalProfile): void {
+function plain(cell: [number, string], { colours, dots }: TerminalProfile): void {
   if (colours === 0) cell[0] |= NO_COLOURS;
-  if (!unicode && cell[1] > '~') cell[1] = plainCell(cell[1]);
+  if (dots === 'block') cell[1] = consoleCell(cell[1]);
+  else if (dots === 'ascii') cell[1] = plainCell(cell[1]);
 }

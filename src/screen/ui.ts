@@ -18,7 +18,7 @@ export interface Ui {
 export const SPANS: readonly number[] = [60, 120, 300, 600, 1200, 2000];
 
 export function initialUi(): Ui {
-  return { selected: null, first: 0, held: false, help: false, far: false, figures: false, span: 300, message: null };
+  return { selected: null, first: 0, held: false, help: false, far: false, figures: false, span: 120, message: null };
 }
 
 /** Place of the chosen channel; 0 where the choice is gone, -1 where there are none. */

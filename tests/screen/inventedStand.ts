@@ -63,7 +63,7 @@ export function channel(slot: number, given: Partial<ChannelView> & { shift?: nu
 export function alarm(given: Partial<AlarmView> = {}): AlarmView {
   return {
     alarm: 'flow#1', channel: 'flow', detector: 'one-beyond-3', side: 'high', since: NOW - 72_000, signals: 4, odds: 1 / 370, clearedAt: null,
-    sentence: 'flow read 43.3 L/min, 4.3 sigmas above its centre 41.8; a channel in its band does so once in 58 500 readings.',
+    sentence: 'flow is above its control limit 42.8 L/min: 43.3 L/min, +4.3 sigma from the centre 41.8 L/min (1 in 58 600).',
     ...given,
   };
 }
@@ -88,8 +88,8 @@ export function troubledStand(): StandView {
     channels,
     alarms: [
       alarm(),
-      alarm({ alarm: 'flow#2', detector: 'eight-one-side', since: NOW - 31_000, odds: 1 / 256, sentence: 'flow: 8 readings in a row lie above the centre 41.8 L/min.' }),
-      alarm({ alarm: 'coolant-in#1', channel: 'coolant-in', side: 'low', since: NOW - 900_000, clearedAt: NOW - 600_000, sentence: 'coolant-in read 75.78 °C, 3.2 sigmas below its centre 76.10.' }),
+      alarm({ alarm: 'flow#2', detector: 'eight-one-side', since: NOW - 31_000, odds: 1 / 256, sentence: 'The last 8 readings of flow all lie above the centre: it has shifted or drifts; now 43.3 L/min.' }),
+      alarm({ alarm: 'coolant-in#1', channel: 'coolant-in', side: 'low', since: NOW - 900_000, clearedAt: NOW - 600_000, sentence: 'coolant-in is below its control limit 75.80 °C: 75.78 °C, -3.2 sigma from the centre 76.10 °C.' }),
     ],
     sources: [{ source: 'cell-bus', phase: 'open', sentence: 'open', faults: 3 }, { source: 'plc', phase: 'lost', sentence: '/dev/ttyUSB1 is not there; it is looked for every 2 s', faults: 0 }],
   };
