@@ -3,7 +3,8 @@ import { clean } from '../../src/text/clean.js';
 import { UserError } from '../../src/text/errors.js';
 import type { SimulatedOptions } from '../options.js';
 import type { Sink, Source, Wanted } from '../source.js';
-import { EVERY, INSTRUMENTS, readingAt } from './cell.js';
+import { INSTRUMENTS, instrumentAt, readingAt } from './cell.js';
+import { EVERY } from './schedule.js';
 
 const AT_ONCE = 200; // steps between turns of the event loop, as fast as it goes
 
@@ -14,7 +15,7 @@ const AT_ONCE = 200; // steps between turns of the event loop, as fast as it goe
  */
 export function simulatedSource(name: string, options: SimulatedOptions, wanted: readonly Wanted[]): Source {
   const taps = wanted.map(({ slot, field, channel }) => {
-    const instrument = INSTRUMENTS.findIndex((candidate) => candidate.channel === (field ?? channel));
+    const instrument = instrumentAt(field ?? channel);
     if (instrument < 0)
       throw new UserError(
         `The simulated cell has no instrument '${clean(field ?? channel, 60)}'.`,
@@ -62,6 +63,7 @@ class SimulatedSource implements Source {
       if (speed > 0) {
         const wait = began + (step * EVERY) / speed - sink.now();
         if (wait > 0) await sleep(wait, undefined, { signal }).catch(() => undefined);
+        else if (step % AT_ONCE === 0) await turn(); // behind its time, it still leaves others theirs
         if (stopped()) break;
       } else if (step % AT_ONCE === 0) await (sink.pressure() ?? turn());
       this.deliver(sink, step, speed > 0 ? sink.now() : began + step * EVERY);
