@@ -17,7 +17,7 @@ export function onTerminal(args: readonly string[], columns: number, height: num
   const screen = new xterm.Terminal({ cols: columns, rows: height, allowProposedApi: true, scrollback: 0 });
   let bytes = '';
   const pty = spawn(process.execPath, [MAIN, ...args], {
-    name: 'xterm-256color',
+    name: env['TERM'] ?? 'xterm-256color', // becomes TERM
     cols: columns,
     rows: height,
     env: { ...process.env, TERM: 'xterm-256color', LANG: 'C.UTF-8', LC_ALL: 'C.UTF-8', NO_COLOR: '', ...env },
