@@ -55,7 +55,7 @@ export class Channel {
     this.window = new RollingWindow(spec.window, this.state);
     this.patterns = new Patterns(spec.rules, k / 3, spec.sideRun, this.state);
     this.frozen = new Frozen(spec.resolution, spec.frozenOdds, this.state);
-    this.evidence = new EvidenceRing(this.state);
+    this.evidence = new EvidenceRing(this.state, spec.sideRun);
     this.histogram = new Histogram(this.state);
     this.ranged = range !== null;
     [this.rangeLow, this.rangeHigh] = range ?? [-Infinity, Infinity];

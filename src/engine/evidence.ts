@@ -1,37 +1,48 @@
 import type { EvidenceReading } from './events.js';
 import { INDEX, TIME, VALUE } from './hand.js';
 
-/** Readings that evidence keeps: more than the longest pattern looks back. A power of two, so that a place is a mask and no division. */
-export const KEPT = 32;
-const PLACE = KEPT - 1;
+const FEWEST = 32; // readings that evidence keeps at least
 
-/** The newest readings of a channel as they came, with their times; those off the scale too. */
+/**
+ * The newest readings of a channel as they came, with their times; those off the scale too. As many as the longest
+ * pattern looks back, so that every verdict recomputes.
+ */
 export class EvidenceRing {
-  private readonly values = new Float64Array(KEPT);
-  private readonly times = new Float64Array(KEPT);
+  /** time and value by turns */
+  private readonly ring: Float64Array;
+  private readonly mask: number;
 
-  constructor(private readonly hand: Float64Array) {}
+  /** @param longest readings that the longest pattern spans */
+  constructor(
+    private readonly hand: Float64Array,
+    longest: number,
+  ) {
+    const kept = 2 ** Math.ceil(Math.log2(Math.max(FEWEST, longest))); // a place is then a mask and no division
+    this.ring = new Float64Array(2 * kept);
+    this.mask = kept - 1;
+  }
 
   /** Keeps the reading at hand. */
   push(): void {
-    const { hand } = this;
-    const place = hand[INDEX]! & PLACE;
-    this.values[place] = hand[VALUE]!;
-    this.times[place] = hand[TIME]!;
+    const { hand, ring } = this;
+    const place = (hand[INDEX]! & this.mask) << 1;
+    ring[place] = hand[TIME]!;
+    ring[place + 1] = hand[VALUE]!;
   }
 
   /** The newest readings, oldest first. */
   list(): EvidenceReading[] {
+    const { ring, mask } = this;
     const newest = this.hand[INDEX]!;
     const readings: EvidenceReading[] = [];
-    for (let index = Math.max(0, newest - KEPT + 1); index <= newest; index++) {
-      const place = index & PLACE;
-      readings.push({ index, time: this.times[place]!, value: this.values[place]! });
+    for (let index = Math.max(0, newest - mask); index <= newest; index++) {
+      const place = (index & mask) << 1;
+      readings.push({ index, time: ring[place]!, value: ring[place + 1]! });
     }
     return readings;
   }
 
   arrays(): Readonly<Record<string, Float64Array>> {
-    return { evidenceValues: this.values, evidenceTimes: this.times };
+    return { evidence: this.ring };
   }
 }

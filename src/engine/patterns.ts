@@ -3,35 +3,43 @@ import { RULES, SUPPLEMENTARY_RULES, type Rule, type Side } from './rules.js';
 
 // Places in the state.
 const RECENT = 0; // which of the newest readings lay beyond a line: four shift registers in one word, see below
-const SIDE = 1; // readings in a row on one side: positive above the centre, negative below
-const RUN = 2; // readings in a row rising (positive) or falling (negative), the first included
-const ZIGZAG = 3; // readings in a row that alternate up and down, the first two included
-const WITHIN = 4;
-const OUTSIDE = 5;
-const SEEN = 6;
-const LENGTH = 7;
+const ABOVE = 1; // readings in a row above the centre, and below it
+const BELOW = 2;
+const RUN = 3; // readings in a row rising (positive) or falling (negative), the first included
+const ZIGZAG = 4; // readings in a row that alternate up and down, the first two included
+const WITHIN = 5;
+const OUTSIDE = 6;
+const SEEN = 7;
+const LENGTH = 8;
 
-// Bits of RECENT, the newest reading in the lowest bit of each register: three beyond +2, three beyond -2, five beyond +1, five beyond -1.
-const HIGH2 = 0;
-const LOW2 = 3;
-const HIGH1 = 6;
-const LOW1 = 11;
-const KEEP = 0b11110_11110_110_110; // after a shift by one: what has not left its register
+// RECENT has a byte for each side, that of the high one first: three readings beyond 2 sigma, then five beyond 1 sigma,
+// the newest in the lowest bit of each register.
+const TWO = 0;
+const ONE = 3;
+const SIDE_BITS = 8;
+const KEEP = 0b11110_110_11110_110; // after a shift by one: what has not left its register
 
 /** Bit of each rule in the mask that `step` returns. */
 export const RULE_BIT: Readonly<Record<Rule, number>> = Object.fromEntries(RULES.map((rule, i) => [rule, 1 << i])) as Record<Rule, number>;
 
 const SUPPLEMENTARY = SUPPLEMENTARY_RULES.reduce((mask, rule) => mask | RULE_BIT[rule], 0);
 
-// Whether two of three / four of five bits are set and the newest is among them.
-const TWO_OF_THREE = Uint8Array.from({ length: 8 }, (_, mask) => (mask & 1 && mask > 1 ? 1 : 0));
-const FOUR_OF_FIVE = Uint8Array.from({ length: 32 }, (_, mask) => (mask & 1 && bits(mask) >= 4 ? 1 : 0));
+/** For each state of one side's registers: the bits of the rules whose pattern holds with the newest reading in it. */
+const HOLDS = Uint8Array.from({ length: 1 << SIDE_BITS }, (_, registers) => {
+  const two = (registers >> TWO) & 0b111;
+  const one = (registers >> ONE) & 0b11111;
+  return (
+    (two & 1 && ones(two) >= 2 ? RULE_BIT['two-of-three-beyond-2'] : 0) | (one & 1 && ones(one) >= 4 ? RULE_BIT['four-of-five-beyond-1'] : 0)
+  );
+});
 
-function bits(mask: number): number {
+function ones(mask: number): number {
   let count = 0;
   for (let rest = mask; rest !== 0; rest &= rest - 1) count++;
   return count;
 }
+
+const LONGEST = 30; // a run of 2^30 readings grows no further
 
 /**
  * The run rules over the zones of one channel. The four zone rules are those of Western Electric, Statistical Quality
@@ -63,37 +71,33 @@ export class Patterns {
     this.enabled = rules.reduce((mask, rule) => mask | RULE_BIT[rule], 0);
   }
 
-  /** Takes the reading at hand. @returns the mask of enabled rules that signal; 0 where all is quiet */
+  /**
+   * Takes the reading at hand. Noise decides each comparison anew, and no processor foresees it: so there are no branches,
+   * comparisons become bits.
+   * @returns the mask of enabled rules that signal; 0 where all is quiet
+   */
   step(): number {
-    const { state: s, hand, one } = this;
+    const { state: s, hand, enabled } = this;
     const z = hand[Z]!;
-    const far = z < 0 ? -z : z;
-    let recent = (s[RECENT]! << 1) & KEEP;
-    let fired = 0;
-    if (far > one) {
-      recent |= z > 0 ? 1 << HIGH1 : 1 << LOW1;
-      if (far > this.two) {
-        recent |= z > 0 ? 1 << HIGH2 : 1 << LOW2;
-        if (far > this.three) fired = 1;
-        if (TWO_OF_THREE[z > 0 ? (recent >> HIGH2) & 7 : (recent >> LOW2) & 7]) fired |= 2;
-      }
-      if (FOUR_OF_FIVE[z > 0 ? (recent >> HIGH1) & 31 : (recent >> LOW1) & 31]) fired |= 4;
-    }
+    const far = Math.abs(z);
+    const above = -+(z > 0); // all bits, or none
+    const below = -+(z < 0);
+    const beyond = (+(far > this.one) << ONE) | (+(far > this.two) << TWO);
+    const recent = ((s[RECENT]! << 1) & KEEP) | (beyond & above) | ((beyond & below) << SIDE_BITS);
     s[RECENT] = recent;
-    const side = s[SIDE]!;
-    const longer = z > 0 ? (side > 0 ? side + 1 : 1) : z < 0 ? (side < 0 ? side - 1 : -1) : 0;
-    s[SIDE] = longer;
-    const run = longer < 0 ? -longer : longer;
-    if (run >= this.sideRun) fired |= 8;
-    if ((this.enabled & SUPPLEMENTARY) !== 0) fired |= this.supplementary(far > one ? 1 : far < one ? -1 : 0, run);
-    return fired & this.enabled;
+    const high = longer(s[ABOVE]!) & above;
+    const low = longer(s[BELOW]!) & below;
+    s[ABOVE] = high;
+    s[BELOW] = low;
+    const run = high | low; // one of them is 0
+    let fired = +(far > this.three) | HOLDS[recent & 0xff]! | HOLDS[recent >> SIDE_BITS]! | (+(run >= this.sideRun) << 3);
+    if ((enabled & SUPPLEMENTARY) !== 0) fired |= this.supplementary(far, run);
+    return fired & enabled;
   }
 
-  /** @param zone 1: outside one sigma, -1: within, 0: exactly on the line */
-  private supplementary(zone: number, run: number): number {
-    const { state: s, before, hand } = this;
+  private supplementary(far: number, run: number): number {
+    const { state: s, before, hand, one } = this;
     const value = hand[VALUE]!; // not z: the order of readings must not depend on its rounding
-    let fired = run >= 9 ? 16 : 0;
     const last = before[0]!;
     before[0] = value;
     if (s[SEEN] === 0) {
@@ -105,16 +109,18 @@ export class Patterns {
       const up = value > last;
       const level = value === last;
       // A reading that turns back begins a new run of two; a tie begins one of one.
-      s[ZIGZAG] = level ? 1 : up === was > 1 && (was > 1 || was < -1) ? 2 : s[ZIGZAG]! + 1;
-      s[RUN] = level ? 1 : up ? (was > 1 ? was + 1 : 2) : was < -1 ? was - 1 : -2;
+      s[ZIGZAG] = level ? 1 : up === was > 1 && (was > 1 || was < -1) ? 2 : longer(s[ZIGZAG]!);
+      s[RUN] = level ? 1 : up ? (was > 1 ? longer(was) : 2) : was < -1 ? -longer(-was) : -2;
     }
-    if (s[RUN] >= 6 || s[RUN] <= -6) fired |= 32;
-    if (s[ZIGZAG] >= 14) fired |= 64;
-    s[WITHIN] = zone < 0 ? s[WITHIN]! + 1 : 0;
-    s[OUTSIDE] = zone > 0 ? s[OUTSIDE]! + 1 : 0;
-    if (s[WITHIN] >= 15) fired |= 128;
-    if (s[OUTSIDE] >= 8) fired |= 256;
-    return fired;
+    s[WITHIN] = longer(s[WITHIN]!) & -+(far < one);
+    s[OUTSIDE] = longer(s[OUTSIDE]!) & -+(far > one);
+    return (
+      (+(run >= 9) << 4) |
+      (+(Math.abs(s[RUN]) >= 6) << 5) |
+      (+(s[ZIGZAG] >= 14) << 6) |
+      (+(s[WITHIN] >= 15) << 7) |
+      (+(s[OUTSIDE] >= 8) << 8)
+    );
   }
 
   /** The side of a rule's pattern that holds now; null where it has none. */
@@ -134,4 +140,9 @@ export class Patterns {
   arrays(): Readonly<Record<string, Float64Array | Int32Array>> {
     return { patterns: this.state, before: this.before };
   }
+}
+
+/** One more, up to the longest run that is counted. */
+function longer(run: number): number {
+  return run + 1 - (run >> LONGEST);
 }

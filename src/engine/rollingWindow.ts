@@ -7,13 +7,15 @@ import type { WindowStatistics } from './window.js';
  *   fresh   this lap's readings in the block being written, as running sums
  *   old     what is left of the oldest block, which is the one being overwritten
  *   middle  all the other blocks
- * When a block is opened, `rest` is made: for each number of fresh readings, the aggregate of old and middle together.
- * A query joins two aggregates. Nothing is ever subtracted from one, so that nothing drifts and an outlier leaves no
- * trace. Sums of squares are taken about an anchor which is one of the summed readings: the loss in s2 - s1^2 / n is then
- * at most a factor n of the last place. Joining is after Chan, Golub and LeVeque, The American Statistician 37(3), 1983.
+ * When a block is opened, `rest` is made: for each number of fresh readings, the sums of old and middle together. A query
+ * adds two records. Nothing is ever subtracted from a sum, so that nothing drifts and an outlier leaves no trace.
+ *
+ * Fresh and rest sum deviations from one anchor, a reading that stays in the window as long as the block is written. With
+ * a summed reading as anchor, S2 - S1^2 / n loses at most a factor n of the last place. What is kept beyond that time, the
+ * aggregate of a whole block, is taken about the block's own mean.
  */
 
-// An aggregate, in doubles. Mean = anchor + offset; the sum of the readings is kept to twice the digits of a double.
+// An aggregate of whole blocks, in doubles. Mean = anchor + offset; the sum is kept to twice the digits of a double.
 const N = 0;
 const ANCHOR = 1;
 const OFFSET = 2;
@@ -23,57 +25,40 @@ const CARRY = 5;
 const MIN = 6;
 const MAX = 7;
 const FIELDS = 8;
-// A record of `rest`: an aggregate without count and anchor.
-const R_OFFSET = 0;
-const R_M2 = 1;
-const R_SUM = 2;
-const R_CARRY = 3;
-const R_MIN = 4;
-const R_MAX = 5;
-const R_FIELDS = 6;
-// `fresh`: sums of the readings in the block being written; the anchor of `rest`, less that of fresh; the result of `join`.
-const F_ANCHOR = 0;
-const F_S1 = 1;
-const F_S2 = 2;
-const F_SUM = 3;
-const F_CARRY = 4;
-const F_MIN = 5;
-const F_MAX = 6;
-const REST_ANCHOR = 7;
-const APART = 8;
-const MEAN = 9;
-const SQUARES = 10;
-const F_FIELDS = 11;
-// `place`: next place, readings held, block being written, its first place, the place after it, 1 when MEAN and SQUARES are out of date.
+// A record of sums: of the fresh readings (with their anchor behind it), or of the rest.
+const S1 = 0; // of deviations from the anchor
+const S2 = 1; // of their squares
+const S = 2; // of the readings themselves
+const LOST = 3; // what S lost in rounding
+const LEAST = 4;
+const MOST = 5;
+const SUMS = 6;
+const ABOUT = SUMS;
+// Places: where the next reading goes, its record of the rest, where the block began and where it ends, its number, 1 once the ring is full.
 const NEXT = 0;
-const HELD = 1;
-const BLOCK = 2;
-const FIRST = 3;
-const AFTER = 4;
-const STALE = 5;
-const P_FIELDS = 6;
+const RECORD = 1;
+const FIRST = 2;
+const AFTER = 3;
+const BLOCK = 4;
+const FULL = 5;
+const PLACES = 6;
 
 let scratch = new Float64Array(512); // for order statistics; shared, since they are asked for one at a time
 
-/** Reciprocals of whole numbers, shared by all windows: a product is several times as fast as a division. */
-let reciprocals = new Float64Array(0);
-function reciprocalsTo(n: number): Float64Array {
-  if (reciprocals.length <= n) reciprocals = Float64Array.from({ length: n + 1 }, (_, i) => 1 / i);
-  return reciprocals;
-}
-
-/** Statistics of the newest `size` readings. Pushing costs the same at every reading and allocates nothing. */
+/**
+ * Statistics of the newest `size` readings. Pushing and asking cost the same at every reading and allocate nothing.
+ * Blocks are joined after Chan, Golub and LeVeque, The American Statistician 37(3), 1983; sums are compensated. Readings
+ * may be anything whose square is finite (below 1e154): one beyond that leaves sd NaN or infinite while it is in the window.
+ */
 export class RollingWindow {
   private readonly values: Float64Array;
   private readonly blocks: Float64Array;
   private readonly rest: Float64Array;
-  private readonly fresh = new Float64Array(F_FIELDS);
-  private readonly middle = new Float64Array(FIELDS);
+  private readonly fresh = new Float64Array(SUMS + 1);
   private readonly back = new Float64Array(FIELDS);
-  private readonly place = new Int32Array(P_FIELDS);
-  private readonly over: Float64Array;
+  private readonly middle = new Float64Array(FIELDS);
+  private readonly place = new Int32Array(PLACES);
   private readonly blockSize: number;
-  private readonly blockCount: number;
 
   /**
    * @param size readings in the window, at least 2
@@ -83,196 +68,189 @@ export class RollingWindow {
     readonly size: number,
     private readonly hand: Float64Array,
   ) {
-    this.blockSize = Math.max(2, Math.round(Math.sqrt(size)));
-    this.blockCount = Math.ceil(size / this.blockSize);
+    this.blockSize = Math.min(Math.round(1.4 * Math.sqrt(size)), size - 1); // the newest reading before a block outlasts it
     this.values = new Float64Array(size);
-    this.blocks = new Float64Array(this.blockCount * FIELDS);
-    this.rest = new Float64Array(this.blockSize * R_FIELDS);
-    this.over = reciprocalsTo(size);
-    this.place[AFTER] = Math.min(this.blockSize, size);
+    this.blocks = new Float64Array(Math.ceil(size / this.blockSize) * FIELDS);
+    this.rest = new Float64Array(this.blockSize * SUMS);
+    for (let record = 0; record < this.rest.length; record += SUMS) {
+      this.rest[record + LEAST] = Infinity;
+      this.rest[record + MOST] = -Infinity;
+    }
+    this.fresh[LEAST] = Infinity;
+    this.fresh[MOST] = -Infinity;
+    this.place[AFTER] = this.blockSize;
   }
 
   get length(): number {
-    return this.place[HELD]!;
+    return this.place[FULL] === 1 ? this.size : this.place[NEXT]!;
   }
 
   /** Takes the finite reading in hand. */
   push(): void {
-    const { place, fresh, hand } = this;
-    const x = hand[VALUE]!;
+    const { place, fresh } = this;
+    const x = this.hand[VALUE]!;
     const at = place[NEXT]!;
+    if (at === 0 && place[FULL] === 0) fresh[ABOUT] = x;
     this.values[at] = x;
-    place[STALE] = 1;
-    if (place[HELD]! < this.size) place[HELD]!++;
-    if (at === place[FIRST]!) {
-      fresh[F_ANCHOR] = x;
-      fresh[F_S1] = 0;
-      fresh[F_S2] = 0;
-      fresh[F_SUM] = x;
-      fresh[F_CARRY] = 0;
-      fresh[F_MIN] = x;
-      fresh[F_MAX] = x;
-      fresh[APART] = x - fresh[REST_ANCHOR]!;
-    } else {
-      const d = x - fresh[F_ANCHOR]!;
-      fresh[F_S1]! += d;
-      fresh[F_S2]! += d * d;
-      const sum = fresh[F_SUM]!;
-      const total = sum + x;
-      fresh[F_CARRY]! += roundingError(sum, x, total);
-      fresh[F_SUM] = total;
-      if (x < fresh[F_MIN]!) fresh[F_MIN] = x;
-      if (x > fresh[F_MAX]!) fresh[F_MAX] = x;
-    }
+    const d = x - fresh[ABOUT]!;
+    fresh[S1]! += d;
+    fresh[S2]! += d * d;
+    const sum = fresh[S]!;
+    const total = sum + x;
+    const part = total - sum;
+    fresh[S] = total;
+    fresh[LOST]! += sum - (total - part) + (x - part); // two-sum; Knuth, The Art of Computer Programming 2, 4.2.2
+    if (x < fresh[LEAST]!) fresh[LEAST] = x;
+    if (x > fresh[MOST]!) fresh[MOST] = x;
+    place[RECORD]! += SUMS;
     place[NEXT] = at + 1;
-    if (at + 1 === place[AFTER]!) this.closeBlock();
+    if (at + 1 === place[AFTER]) this.closeBlock();
+  }
+
+  /** Mean; NaN before the first reading. */
+  mean(): number {
+    const { fresh, rest } = this;
+    const record = this.place[RECORD]!;
+    const a = fresh[S]!;
+    const b = rest[record + S]!;
+    const total = a + b;
+    const part = total - a;
+    const lost = a - (total - part) + (b - part) + fresh[LOST]! + rest[record + LOST]!;
+    return (total + lost) / this.length;
+  }
+
+  /** Sample standard deviation (n - 1); NaN for fewer than two readings. */
+  sd(): number {
+    const { fresh, rest } = this;
+    const record = this.place[RECORD]!;
+    const n = this.length;
+    const s1 = fresh[S1]! + rest[record + S1]!;
+    const s2 = fresh[S2]! + rest[record + S2]!;
+    return Math.sqrt(Math.max(0, n * s2 - s1 * s1) / (n * (n - 1)));
+  }
+
+  min(): number {
+    return this.length === 0 ? NaN : Math.min(this.fresh[LEAST]!, this.rest[this.place[RECORD]! + LEAST]!);
+  }
+
+  max(): number {
+    return this.length === 0 ? NaN : Math.max(this.fresh[MOST]!, this.rest[this.place[RECORD]! + MOST]!);
   }
 
   private closeBlock(): void {
-    const { place, fresh, blocks, back, over } = this;
+    const { place, blocks, back, size } = this;
     const base = place[BLOCK]! * FIELDS;
-    const n = place[AFTER]! - place[FIRST]!;
-    blocks[base + N] = n;
-    blocks[base + ANCHOR] = fresh[F_ANCHOR]!;
-    blocks[base + OFFSET] = fresh[F_S1]! * over[n]!;
-    blocks[base + M2] = Math.max(0, fresh[F_S2]! - fresh[F_S1]! * fresh[F_S1]! * over[n]!);
-    blocks[base + SUM] = fresh[F_SUM]!;
-    blocks[base + CARRY] = fresh[F_CARRY]!;
-    blocks[base + MIN] = fresh[F_MIN]!;
-    blocks[base + MAX] = fresh[F_MAX]!;
-    if (place[AFTER]! < this.size) {
+    this.summarise(base);
+    if (place[AFTER]! < size) {
       join(back, 0, blocks, base);
       place[BLOCK]!++;
     } else {
       // A lap is done: each of its blocks takes in all that follow it, for the middles of the next lap.
-      for (let b = this.blockCount - 2; b >= 0; b--) join(blocks, b * FIELDS, blocks, (b + 1) * FIELDS);
+      for (let b = blocks.length - 2 * FIELDS; b >= 0; b -= FIELDS) join(blocks, b, blocks, b + FIELDS);
       back[N] = 0;
       place[BLOCK] = 0;
       place[NEXT] = 0;
+      place[FULL] = 1;
     }
     place[FIRST] = place[NEXT]!;
-    place[AFTER] = Math.min(place[NEXT]! + this.blockSize, this.size);
+    place[AFTER] = Math.min(place[NEXT]! + this.blockSize, size);
+    place[RECORD] = 0;
     this.openBlock();
+  }
+
+  /** The aggregate of the block just written. */
+  private summarise(base: number): void {
+    const { place, fresh, blocks, values } = this;
+    const first = place[FIRST]!;
+    const after = place[AFTER]!;
+    const n = after - first;
+    const anchor = fresh[S]! / n;
+    let s1 = 0;
+    let s2 = 0;
+    let least = Infinity;
+    let most = -Infinity;
+    for (let i = first; i < after; i++) {
+      const x = values[i]!;
+      const d = x - anchor;
+      s1 += d;
+      s2 += d * d;
+      if (x < least) least = x;
+      if (x > most) most = x;
+    }
+    blocks[base + N] = n;
+    blocks[base + ANCHOR] = anchor;
+    blocks[base + OFFSET] = s1 / n;
+    blocks[base + M2] = Math.max(0, s2 - (s1 * s1) / n);
+    blocks[base + SUM] = fresh[S]!;
+    blocks[base + CARRY] = fresh[LOST]!;
+    blocks[base + MIN] = least;
+    blocks[base + MAX] = most;
+  }
+
+  /** A reading that outlasts the block about to be written: the middle one of the newest three, so that it is no lone outlier. */
+  private anchor(): number {
+    const { values, size, blockSize } = this;
+    const last = this.place[FIRST]! + size - 1;
+    const a = values[last % size]!;
+    if (this.length < 3 || size - blockSize < 3) return a;
+    const b = values[(last - 1) % size]!;
+    const c = values[(last - 2) % size]!;
+    return Math.max(Math.min(a, b), Math.min(Math.max(a, b), c));
   }
 
   /** Makes `rest` for the block that is about to be written, while its old readings still stand. */
   private openBlock(): void {
-    const { values, rest, place, fresh, middle, back, blocks, over } = this;
+    const { values, fresh, rest, place, middle, back, blocks } = this;
     const first = place[FIRST]!;
     const after = place[AFTER]!;
-    const full = place[HELD] === this.size;
+    const full = place[FULL] === 1;
+    const anchor = this.anchor();
     middle[N] = 0;
     const next = (place[BLOCK]! + 1) * FIELDS;
     if (full && next < blocks.length) join(middle, 0, blocks, next);
     if (back[N]! > 0) join(middle, 0, back, 0);
-    const nMiddle = middle[N];
-    const anchor = full ? values[after - 1]! : middle[ANCHOR]!;
-    const mMiddle = nMiddle > 0 ? middle[ANCHOR]! - anchor + middle[OFFSET]! : 0;
-    fresh[REST_ANCHOR] = anchor;
-    let s1 = 0;
-    let s2 = 0;
+    const n = middle[N]; // never 0: a block is shorter than the window
+    const apart = middle[ANCHOR]! - anchor + middle[OFFSET]!;
+    let s1 = n * apart;
+    let s2 = middle[M2]! + s1 * apart;
     let sum = middle[SUM]!;
-    let carry = middle[CARRY]!;
-    let min = middle[MIN]!;
-    let max = middle[MAX]!;
-    if (nMiddle === 0) {
-      sum = 0;
-      carry = 0;
-      min = Infinity;
-      max = -Infinity;
-    }
+    let lost = middle[CARRY]!;
+    let least = middle[MIN]!;
+    let most = middle[MAX]!;
+    fresh[S1] = 0;
+    fresh[S2] = 0;
+    fresh[S] = 0;
+    fresh[LOST] = 0;
+    fresh[LEAST] = least; // the middle stays in the window as long as the block is written: few readings pass its extremes
+    fresh[MOST] = most;
+    fresh[ABOUT] = anchor;
+    // In the first lap there is no old block: then every record is the middle.
     for (let i = after - 1; i >= first; i--) {
-      let k = 0;
       if (full) {
-        k = after - i;
         const x = values[i]!;
         const d = x - anchor;
         s1 += d;
         s2 += d * d;
         const total = sum + x;
-        carry += roundingError(sum, x, total);
+        lost += roundingError(sum, x, total);
         sum = total;
-        if (x < min) min = x;
-        if (x > max) max = x;
+        if (x < least) least = x;
+        if (x > most) most = x;
       }
-      const record = (i - first) * R_FIELDS;
-      const mOld = k > 0 ? s1 * over[k]! : 0;
-      const apart = mOld - mMiddle;
-      const share = k + nMiddle > 0 ? over[k + nMiddle]! : 0;
-      rest[record + R_OFFSET] = (s1 + nMiddle * mMiddle) * share;
-      rest[record + R_M2] = Math.max(0, s2 - s1 * mOld) + (nMiddle > 0 ? middle[M2]! : 0) + apart * apart * (k * nMiddle * share);
-      rest[record + R_SUM] = sum;
-      rest[record + R_CARRY] = carry;
-      rest[record + R_MIN] = min;
-      rest[record + R_MAX] = max;
+      const record = (i - first) * SUMS;
+      rest[record + S1] = s1;
+      rest[record + S2] = s2;
+      rest[record + S] = sum;
+      rest[record + LOST] = lost;
+      rest[record + LEAST] = least;
+      rest[record + MOST] = most;
     }
-  }
-
-  /** Joins fresh and rest into MEAN and SQUARES. */
-  private settle(): void {
-    const { place, fresh, rest, over } = this;
-    place[STALE] = 0;
-    const held = place[HELD]!;
-    const nFresh = place[NEXT]! - place[FIRST]!;
-    const record = nFresh * R_FIELDS;
-    const nRest = held - nFresh;
-    if (nFresh === 0) {
-      fresh[MEAN] = (rest[record + R_SUM]! + rest[record + R_CARRY]!) / held;
-      fresh[SQUARES] = rest[record + R_M2]!;
-      return;
-    }
-    const s1 = fresh[F_S1]!;
-    const offset = s1 * over[nFresh]!;
-    let squares = fresh[F_S2]! - s1 * offset;
-    if (squares < 0) squares = 0;
-    const sum = fresh[F_SUM]!;
-    if (nRest === 0) {
-      fresh[MEAN] = (sum + fresh[F_CARRY]!) / held;
-      fresh[SQUARES] = squares;
-      return;
-    }
-    const apart = fresh[APART]! + (offset - rest[record + R_OFFSET]!);
-    fresh[SQUARES] = squares + rest[record + R_M2]! + apart * apart * (nFresh * nRest * over[held]!);
-    const other = rest[record + R_SUM]!;
-    const total = sum + other;
-    fresh[MEAN] = (total + (roundingError(sum, other, total) + fresh[F_CARRY]! + rest[record + R_CARRY]!)) / held;
-  }
-
-  /** Mean; NaN before the first reading. */
-  mean(): number {
-    if (this.place[STALE] !== 0) this.settle();
-    return this.place[HELD] === 0 ? NaN : this.fresh[MEAN]!;
-  }
-
-  /** Sample standard deviation (n - 1); NaN for fewer than two readings. */
-  sd(): number {
-    if (this.place[STALE] !== 0) this.settle();
-    const held = this.place[HELD]!;
-    return held < 2 ? NaN : Math.sqrt(this.fresh[SQUARES]! / (held - 1));
-  }
-
-  min(): number {
-    return this.extreme(F_MIN, R_MIN, Math.min);
-  }
-
-  max(): number {
-    return this.extreme(F_MAX, R_MAX, Math.max);
-  }
-
-  private extreme(ofFresh: number, ofRest: number, more: (a: number, b: number) => number): number {
-    const { place, fresh, rest } = this;
-    const held = place[HELD]!;
-    const nFresh = place[NEXT]! - place[FIRST]!;
-    if (held === 0) return NaN;
-    if (nFresh === held) return fresh[ofFresh]!;
-    const other = rest[nFresh * R_FIELDS + ofRest]!;
-    return nFresh === 0 ? other : more(fresh[ofFresh]!, other);
   }
 
   /** Copies the newest `min(length, out.length)` readings, oldest first. @returns how many */
   copy(out: Float64Array): number {
     const { values, place, size } = this;
-    const n = Math.min(place[HELD]!, out.length);
+    const n = Math.min(this.length, out.length);
     const from = (place[NEXT]! - n + size) % size;
     const head = Math.min(n, size - from);
     out.set(values.subarray(from, from + head));
