@@ -24,7 +24,7 @@ export function drawAlarms(r: Raster, t: Theme, view: StandView, row: number, he
     const attrs = over ? t.faint : t.alarm;
     r.put(1, at, over ? '·' : '■', attrs);
     r.text(3, at, over ? `over ${age.split(' ').slice(0, 2).join(' ')}` : age, attrs, 14);
-    at += wrapped(r, words(alarm), 17, at, r.width - 18, over ? t.faint : t.plain, over ? 1 : Math.min(left, 2));
+    at += wrapped(r, words(alarm), 17, at, r.width - 18, over ? t.faint : t.plain, over ? 1 : Math.min(2, standing.length - i > 1 ? left - 1 : left));
   }
 }
 
@@ -34,17 +34,20 @@ function words({ sentence, odds, signals, clearedAt }: AlarmView): string {
   return `${sentence}${chance}${clearedAt === null && signals > 1 ? ` ${signals} signals.` : ''}`;
 }
 
-/** Text over at most so many rows, broken at blanks. @returns the rows taken */
+const KEPT = '\u00a0'; // a blank that no line is broken at
+
+/** Text over at most so many rows, broken at blanks but not within a number or odds. @returns the rows taken */
 function wrapped(r: Raster, text: string, column: number, row: number, width: number, attrs: number, most: number): number {
-  let rest = text;
+  let rest = text.replace(/(\d) (?=\d{3}\b)/g, `$1${KEPT}`).replace(/\b1 in (?=\d)/g, `1${KEPT}in${KEPT}`);
+  const say = (words: string, line: number): number => r.text(column, line, words.replaceAll(KEPT, ' '), attrs);
   for (let i = 0; i < most; i++) {
     if (rest.length <= width || i === most - 1) {
-      r.text(column, row + i, rest.length <= width ? rest : `${rest.slice(0, width - 1)}…`, attrs);
+      say(rest.length <= width ? rest : `${rest.slice(0, width - 1)}…`, row + i);
       return i + 1;
     }
     const cut = rest.lastIndexOf(' ', width);
     const end = cut > width / 2 ? cut : width;
-    r.text(column, row + i, rest.slice(0, end), attrs);
+    say(rest.slice(0, end), row + i);
     rest = rest.slice(end).trimStart();
   }
   return most;
@@ -64,7 +67,7 @@ export function drawFigures(r: Raster, t: Theme, c: ChannelView, row: number, he
       ['limits', `${value(band.low)} to ${value(band.high)} (${band.k}σ)`],
     );
   } else pairs.push(['band', c.settled ? `${c.settled[0]} of ${c.settled[1]} readings` : 'none']);
-  pairs.push(['newest', c.z === null || c.odds === null ? '-' : `${formatZ(c.z)}σ, ${formatOdds(c.odds)}`]);
+  pairs.push(['newest', c.z === null || c.odds === null || !Number.isFinite(c.z) ? '-' : `${formatZ(c.z)}σ, ${formatOdds(c.odds)}`]);
   if (w)
     pairs.push(
       ['window', `${w.n} readings`],

@@ -65,7 +65,7 @@ function drawRow(r: Raster, t: Theme, c: ChannelView, alarm: AlarmView | null, r
   if (c.value !== null) r.text(after + 1, row, c.unit, t.faint, places.z - after - 2);
   if (c.state === 'settling' && c.settled) drawProgress(r, t, c.settled, row, places);
   else if (c.band) {
-    if (c.z !== null) r.text(places.z, row, `${formatZ(c.z)}σ`.padStart(6), alarm ? t.alarm : t.plain, 7);
+    if (c.z !== null && Number.isFinite(c.z)) r.text(places.z, row, `${formatZ(c.z)}σ`.padStart(6), alarm ? t.alarm : t.plain, 7);
     drawRuler(r, t, c, alarm !== null, row, places);
     drawSpark(r, t, c, row, places);
   }
