@@ -26,7 +26,7 @@ export function d2(n: number): number {
 export function d3(n: number): number {
   if (!(n >= 2)) return NaN;
   const mean = d2(n);
-  const variance = integrate((w) => (w - mean) ** 2 * rangeDensity(w, n), 0, mean + 10, Math.ceil(mean + 10));
+  const variance = integrate((w) => (w - mean) ** 2 * rangeDensity(w, n), 0, mean + 13, Math.ceil(mean + 13));
   return Math.sqrt(variance);
 }
 
