@@ -95,7 +95,7 @@ describe('a fault in a stand file is told with its place and the mend', () => {
   it('a file spoiled anywhere is a good file or a fault in sentences, never a crash', () => {
     let random = 7;
     const next = (n: number): number => (random = (Math.imul(random, 1664525) + 1013904223) >>> 0) % n;
-    const marks = [...'{}[]:,#&*!|>\'"%@`- \n\t0aZ\u0000\u001b'];
+    const marks = Array.from('{}[]:,#&*!|>\'"%@`- \n\t0aZ\u0000\u001b');
     let refused = 0;
     for (let i = 0; i < 400; i++) {
       let text = GOOD;
@@ -107,7 +107,6 @@ describe('a fault in a stand file is told with its place and the mend', () => {
         loadStand(standFile(text));
       } catch (error) {
         expect(error, text).toBeInstanceOf(UserError);
-        // eslint-disable-next-line no-control-regex
         expect((error as UserError).message).not.toMatch(/[\u0000-\u0009\u000b-\u001f\u007f-\u009f]|undefined|\[object/);
         refused++;
       }
