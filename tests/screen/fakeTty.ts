@@ -85,7 +85,7 @@ export const COLOUR_TERMINAL = { TERM: 'xterm-256color', LANG: 'C.UTF-8' };
 /** Opens the screen on a terminal in memory and draws it once. */
 export async function show(
   view: StandView | (() => StandView),
-  { columns = 80, rows = 24, env = COLOUR_TERMINAL as NodeJS.ProcessEnv } = {},
+  { columns = 80, rows = 24, env = COLOUR_TERMINAL }: { columns?: number; rows?: number; env?: NodeJS.ProcessEnv } = {},
 ): Promise<Shown> {
   const tty = new FakeTty(columns, rows);
   const told: string[] = [];

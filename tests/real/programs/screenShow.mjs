@@ -32,7 +32,6 @@ const end = (words, status) => {
   clearInterval(pulse);
   process.stderr.write(`owner: ${words}\n`);
   process.exitCode = status;
-  process.stdin.destroy();
 };
 const screen = openScreen({
   env: process.env,
