@@ -30,8 +30,7 @@ async function main(args: readonly string[]): Promise<number> {
     process.stderr.write(`kilter: there is no verb '${clean(name, 40)}'.${near ? ` Did you mean '${near}'?` : ''} kilter --help lists them.\n`);
     return WRONG_USE;
   }
-  const { run } = await found.load();
-  return run(rest);
+  return (await found.load()).run(rest);
 }
 
 process.stdout.on('error', (error: NodeJS.ErrnoException) => {

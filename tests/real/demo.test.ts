@@ -54,9 +54,7 @@ describe('demo on a real terminal', () => {
     demo.pty.write('q');
     await demo.exit;
     const whileShown = demo.bytes().split('\u001b[?1049l')[0]!;
-    // eslint-disable-next-line no-control-regex
     expect(whileShown).not.toMatch(/\u001b\[(?:\d+;)*(?:3[0-8]|4[0-8]|9\d|10\d)(?:;\d+)*m/);
-    // eslint-disable-next-line no-control-regex
     expect(whileShown).toMatch(/^[\u0000-\u007f]*$/);
   });
 
