@@ -1,9 +1,9 @@
-import { twoSided } from '../stats/normal.js';
-import { alarmId, type ActiveAlarm } from './alarm.js';
+import type { ActiveAlarm } from './alarm.js';
+import { Alarms, type Grounds, type Moment } from './alarms.js';
 import type { Band } from './band.js';
 import { Baseline, predictionLimit } from './baseline.js';
 import { EvidenceRing } from './evidence.js';
-import type { AlarmRaised, EngineEvent } from './events.js';
+import type { EngineEvent } from './events.js';
 import { Frozen } from './frozen.js';
 import { HAND_FIELDS, INDEX, TIME, VALUE, Z } from './hand.js';
 import { Histogram } from './histogram.js';
@@ -13,15 +13,28 @@ import { RULES, type Detector, type Side } from './rules.js';
 import { pack, unpack, type ChannelSnapshot } from './snapshot.js';
 import type { ChannelSpec } from './spec.js';
 import type { WindowStatistics } from './window.js';
-import { bandSentence, clearedSentence, raisedSentence } from './words.js';
+import { bandSentence } from './words.js';
 
 /** What a quiet reading gives: always this one, so that nothing is allocated. */
 const NONE: readonly EngineEvent[] = Object.freeze([]);
 
+const AT_VALUE = VALUE;
+const AT_Z = Z;
+const AT_TIME = TIME;
+const AT_INDEX = INDEX;
+const INCONSISTENT = RULE_BIT.inconsistent;
 // Further places of the state, after those of the reading at hand.
 const LAST_TIME = HAND_FIELDS; // newest time of any reading
 const WATCH_BEGAN = HAND_FIELDS + 1; // first tick, for a channel of which nothing ever came
 const SILENT = HAND_FIELDS + 2; // 1 while a silence has been signalled and no reading came since
+// Places of the limits: numbers in an array need no look at their kind before they are used.
+const RANGE_LOW = 0;
+const RANGE_HIGH = 1;
+const TOLERANCE_LOW = 2;
+const TOLERANCE_HIGH = 3;
+const CENTRE = 4;
+const SIGMA = 5;
+const PREDICTION = 6;
 
 /**
  * One channel from reading to signal to alarm: a function of (state, reading) and (state, time) to (state, events).
@@ -30,38 +43,32 @@ const SILENT = HAND_FIELDS + 2; // 1 while a silence has been signalled and no r
 export class Channel {
   /** value, z, time and index of the reading at hand; then newest time, begin of the watch, whether silent */
   private readonly state = Float64Array.of(NaN, NaN, NaN, -1, NaN, NaN, 0);
+  private readonly limits: Float64Array;
   private readonly window: RollingWindow;
   private readonly patterns: Patterns;
   private readonly frozen: Frozen;
   private readonly evidence: EvidenceRing;
   private readonly baseline: Baseline | null;
-  private readonly ranged: boolean;
-  private readonly rangeLow: number;
-  private readonly rangeHigh: number;
-  private readonly tolerated: boolean;
-  private readonly toleranceLow: number;
-  private readonly toleranceHigh: number;
-  private readonly inconsistent: boolean;
-  private active: ActiveAlarm[] = [];
+  private readonly standing: Alarms;
+  private readonly watchFrozen: boolean;
   private bandInForce: Band | null = null;
-  private centre = NaN;
-  private sigma = NaN;
-  private prediction = Infinity;
   /** Readings since the band was established, by quarter sigmas. */
   readonly histogram: Histogram;
 
   constructor(readonly spec: ChannelSpec) {
     const { band, k, range, tolerance } = spec;
+    const [rangeLow, rangeHigh] = range ?? [-Infinity, Infinity];
+    const [toleranceLow, toleranceHigh] = tolerance ?? [-Infinity, Infinity];
+    // Infinities measure nothing, whatever the range.
+    const [least, most] = [Math.max(rangeLow, -Number.MAX_VALUE), Math.min(rangeHigh, Number.MAX_VALUE)];
+    this.limits = Float64Array.of(least, most, toleranceLow, toleranceHigh, NaN, NaN, Infinity);
     this.window = new RollingWindow(spec.window, this.state);
-    this.patterns = new Patterns(spec.rules, k / 3, spec.sideRun, this.state);
+    this.patterns = new Patterns(spec.rules, k, spec.sideRun, this.state);
     this.frozen = new Frozen(spec.resolution, spec.frozenOdds, this.state);
     this.evidence = new EvidenceRing(this.state, spec.sideRun);
     this.histogram = new Histogram(this.state);
-    this.ranged = range !== null;
-    [this.rangeLow, this.rangeHigh] = range ?? [-Infinity, Infinity];
-    this.tolerated = tolerance !== null;
-    [this.toleranceLow, this.toleranceHigh] = tolerance ?? [-Infinity, Infinity];
-    this.inconsistent = spec.rules.includes('inconsistent');
+    this.standing = new Alarms(spec);
+    this.watchFrozen = spec.frozen;
     if ('learn' in band) this.baseline = new Baseline(band.learn);
     else {
       this.baseline = null;
@@ -88,7 +95,7 @@ export class Channel {
     const channel = new Channel(spec);
     unpack(snapshot.arrays, channel.arrays());
     if (snapshot.band) channel.establish(snapshot.band);
-    channel.active = snapshot.alarms.map((alarm) => ({ ...alarm }));
+    channel.standing.standing = snapshot.alarms.map((alarm) => ({ ...alarm }));
     return channel;
   }
 
@@ -97,7 +104,7 @@ export class Channel {
       version: 1,
       spec: JSON.stringify(this.spec),
       band: this.bandInForce,
-      alarms: this.active.map((alarm) => ({ ...alarm })),
+      alarms: this.alarms.map((alarm) => ({ ...alarm })),
       arrays: pack(this.arrays()),
     };
   }
@@ -108,25 +115,26 @@ export class Channel {
    * @param value in the channel's unit; NaN and infinities are off the scale
    */
   take(time: number, value: number): readonly EngineEvent[] {
-    const { state } = this;
-    state[INDEX]!++;
-    state[VALUE] = value;
-    state[TIME] = time;
-    if (!(time <= state[LAST_TIME]!)) state[LAST_TIME] = time;
+    const { state, limits } = this;
+    state[AT_INDEX]!++;
+    state[AT_VALUE] = value;
+    state[AT_TIME] = time;
+    const last = state[LAST_TIME]!;
+    if (time > last || last !== last) state[LAST_TIME] = time;
     this.evidence.push();
-    if (!(value >= this.rangeLow && value <= this.rangeHigh && value - value === 0)) return this.offScale(time, value);
+    if (!(value >= limits[RANGE_LOW]! && value <= limits[RANGE_HIGH]!)) return this.offScale(time, value);
     this.window.push();
     if (this.bandInForce === null) return this.settle(time, value);
 
-    const z = (value - this.centre) / this.sigma;
-    state[Z] = z;
+    const z = (value - limits[CENTRE]!) / limits[SIGMA]!;
+    state[AT_Z] = z;
     this.histogram.add();
     let fired = this.patterns.step();
-    if (this.inconsistent && (z > this.prediction || z < -this.prediction)) fired |= RULE_BIT.inconsistent;
-    const frozen = this.spec.frozen && this.frozen.step();
-    const outside = value > this.toleranceHigh || value < this.toleranceLow;
-    if (fired === 0 && !frozen && !outside && this.active.length === 0 && state[SILENT] === 0) return NONE;
-    return this.report(time, value, z, fired, frozen, outside, false);
+    if (Math.abs(z) > limits[PREDICTION]!) fired |= INCONSISTENT;
+    const frozen = this.watchFrozen && this.frozen.step();
+    const outside = value > limits[TOLERANCE_HIGH]! || value < limits[TOLERANCE_LOW]!;
+    if (fired === 0 && !frozen && !outside && this.standing.standing.length === 0) return NONE;
+    return this.report(time, value, z, fired, frozen, outside);
   }
 
   /**
@@ -134,177 +142,89 @@ export class Channel {
    * @param time ms since the epoch, by the same clock as the readings
    */
   tick(time: number): readonly EngineEvent[] {
-    const { state, spec } = this;
-    if (spec.silentAfter === null || state[SILENT] === 1) return NONE;
-    let since = state[LAST_TIME]!;
-    if (since !== since) {
-      if (state[WATCH_BEGAN]! !== state[WATCH_BEGAN]!) state[WATCH_BEGAN] = time;
-      since = state[WATCH_BEGAN]!;
-    }
-    if (!(time - since > spec.silentAfter)) return NONE;
+    const { state } = this;
+    const { silentAfter } = this.spec;
+    if (silentAfter === null || state[SILENT] === 1) return NONE;
+    if (Number.isNaN(state[WATCH_BEGAN])) state[WATCH_BEGAN] = time;
+    const since = this.lastTime ?? state[WATCH_BEGAN]!;
+    if (!(time - since > silentAfter)) return NONE;
     state[SILENT] = 1;
     const events: EngineEvent[] = [];
-    this.signal(events, 'silent', null, time, null, null, time - since);
+    const moment = { index: this.index, time, value: null, z: null, band: this.bandInForce };
+    this.standing.signal(events, 'silent', null, moment, () => this.grounds({ silentAfter, silence: time - since }));
     return events;
   }
 
   /** A reading that measures nothing: it counts, but takes part in no statistics, as a missing reading takes part in none. */
   private offScale(time: number, value: number): readonly EngineEvent[] {
-    this.state[Z] = NaN;
-    return this.report(time, value, null, 0, false, false, true);
-  }
-
-  private settle(time: number, value: number): readonly EngineEvent[] {
-    const { baseline, spec, state } = this;
-    const outside = value > this.toleranceHigh || value < this.toleranceLow;
-    const done = baseline?.take(value) ?? false;
-    const events = outside || this.active.length > 0 || state[SILENT] === 1 ? this.report(time, value, null, 0, false, outside, false) : NONE;
-    if (!done || baseline === null) return events;
-    const band = baseline.band(`learned@${state[INDEX]}`, spec.k, spec.resolution);
-    baseline.restart();
-    if (band) this.establish(band);
-    return [...events, { event: 'band', channel: spec.channel, index: state[INDEX]!, time, band, sentence: bandSentence(spec, band) }];
-  }
-
-  private establish(band: Band): void {
-    this.bandInForce = band;
-    this.centre = band.centre;
-    this.sigma = band.sigma;
-    this.prediction = predictionLimit(band);
-    this.frozen.judgeBy(band.sigma);
-  }
-
-  /** The signals of a reading, and what they do to the alarms. Only readings that are not quiet come here. */
-  private report(
-    time: number,
-    value: number,
-    z: number | null,
-    fired: number,
-    frozen: boolean,
-    outside: boolean,
-    offScale: boolean,
-  ): readonly EngineEvent[] {
+    const { state, limits, spec } = this;
+    state[AT_Z] = NaN;
+    state[SILENT] = 0;
     const events: EngineEvent[] = [];
-    const { spec, state } = this;
-    if (state[SILENT] === 1) {
-      state[SILENT] = 0;
-      this.clear(events, 'silent', time, value, z);
-    }
-    if (fired !== 0)
-      for (const rule of RULES)
-        if (fired & RULE_BIT[rule]) this.signal(events, rule, this.patterns.sideOf(rule), time, value, z, 0);
-    if (frozen) this.signal(events, 'frozen', null, time, value, z, 0);
-    if (outside) this.signal(events, 'tolerance', value > this.toleranceHigh ? 'high' : 'low', time, value, z, 0);
-    if (offScale) this.signal(events, 'off-scale', value > this.rangeHigh ? 'high' : value < this.rangeLow ? 'low' : null, time, value, z, 0);
-    if (this.active.length === 0) return events;
-    const inBand = z === null || (z <= spec.k && z >= -spec.k);
-    for (const alarm of [...this.active]) {
-      if (alarm.calm < 0) {
-        alarm.calm = 0; // signalled at this very reading
-        continue;
-      }
-      const statistical = alarm.detector !== 'tolerance' && alarm.detector !== 'off-scale';
-      if (offScale || (statistical && !inBand)) alarm.calm = 0;
-      else if (++alarm.calm >= spec.clearAfter && alarm.detector !== 'silent') this.clear(events, alarm.detector, time, value, z);
-    }
+    const moment = this.moment(time, value, null);
+    const side = value > limits[RANGE_HIGH]! ? 'high' : value < limits[RANGE_LOW]! ? 'low' : null;
+    this.standing.signal(events, 'off-scale', side, moment, () => this.grounds(pair(spec.range)));
+    this.standing.settle(events, moment, false);
     return events;
   }
 
-  private signal(
-    events: EngineEvent[],
-    detector: Detector,
-    side: Side | null,
-    time: number,
-    value: number | null,
-    z: number | null,
-    silence: number,
-  ): void {
-    const { spec, state } = this;
-    const index = state[INDEX]!;
-    const number = value !== null && Number.isFinite(value) ? value : null;
-    events.push({ event: 'signal', channel: spec.channel, index, time, detector, side, value: number, z });
-    const standing = this.active.find((alarm) => alarm.detector === detector);
-    if (standing) {
-      standing.signals++;
-      standing.calm = -1;
-      return;
-    }
-    const alarm = alarmId(spec.channel, detector, time, index);
-    this.active.push({ alarm, detector, side, raisedIndex: index, raisedTime: time, signals: 1, calm: -1 });
-    events.push(this.raised(alarm, detector, side, time, value, z, silence));
+  private settle(time: number, value: number): readonly EngineEvent[] {
+    const { baseline, spec, limits } = this;
+    const outside = value > limits[TOLERANCE_HIGH]! || value < limits[TOLERANCE_LOW]!;
+    const events = outside || this.alarms.length > 0 ? this.report(time, value, null, 0, false, outside) : NONE;
+    if (baseline?.take(value) !== true) return events;
+    const { index } = this;
+    const band = baseline.band(`learned@${index}`, spec.k, spec.resolution);
+    baseline.restart();
+    if (band) this.establish(band);
+    return [...events, { event: 'band', channel: spec.channel, index, time, band, sentence: bandSentence(spec, band) }];
   }
 
-  private raised(
-    alarm: string,
-    detector: Detector,
-    side: Side | null,
-    time: number,
-    value: number | null,
-    z: number | null,
-    silence: number,
-  ): AlarmRaised {
-    const { spec, frozen, bandInForce } = this;
-    const index = this.state[INDEX]!;
-    const { repeats } = frozen;
-    const lnOdds = frozen.logChance * repeats;
-    const odds = detector === 'frozen' ? Math.exp(lnOdds) : z === null ? null : twoSided(z);
-    const facts = { detector, side, value, z, odds, band: bandInForce, repeats, lnOdds, silence };
-    return {
-      event: 'raised',
-      alarm,
-      channel: spec.channel,
-      unit: spec.unit,
-      index,
-      time,
-      detector,
-      side,
-      value: value !== null && Number.isFinite(value) ? value : null,
-      z,
-      odds,
-      evidence: { band: bandInForce, limits: this.limits(detector, silence), readings: this.evidence.list() },
-      sentence: raisedSentence(spec, facts),
-    };
+  private establish(band: Band): void {
+    const { limits } = this;
+    this.bandInForce = band;
+    limits[CENTRE] = band.centre;
+    limits[SIGMA] = band.sigma;
+    if (this.spec.rules.includes('inconsistent')) limits[PREDICTION] = predictionLimit(band);
+    this.frozen.judgeBy(band.sigma);
   }
 
-  /** The limits that a detector judged by, by name. */
-  private limits(detector: Detector, silence: number): Record<string, number> {
-    const { spec, frozen } = this;
-    switch (detector) {
-      case 'silent':
-        return { silentAfter: spec.silentAfter!, silence };
-      case 'off-scale':
-        return this.ranged ? { low: this.rangeLow, high: this.rangeHigh } : {};
-      case 'tolerance':
-        return this.tolerated ? { low: this.toleranceLow, high: this.toleranceHigh } : {};
-      case 'frozen':
-        return { repeats: frozen.repeats, step: frozen.smallestStep ?? 0, odds: spec.frozenOdds };
-      case 'inconsistent':
-        return { prediction: this.prediction };
-      case 'eight-one-side':
-        return { scale: spec.k / 3, sideRun: spec.sideRun };
-      default:
-        return { scale: spec.k / 3 };
-    }
+  /** The signals of a reading on the scale, and what they do to the alarms. Only readings that are not quiet come here. */
+  private report(time: number, value: number, z: number | null, fired: number, frozen: boolean, outside: boolean): readonly EngineEvent[] {
+    const events: EngineEvent[] = [];
+    const { spec, standing, patterns, limits, state } = this;
+    const moment = this.moment(time, value, z);
+    const signal = (detector: Detector, side: Side | null, grounds: () => Grounds): void =>
+      standing.signal(events, detector, side, moment, grounds);
+    state[SILENT] = 0;
+    for (const rule of RULES)
+      if (fired & RULE_BIT[rule]) {
+        signal(rule, patterns.sideOf(rule), () =>
+          this.grounds(
+            rule === 'inconsistent'
+              ? { prediction: limits[PREDICTION]! }
+              : { scale: spec.k / 3, ...(rule === 'eight-one-side' && { sideRun: spec.sideRun }) },
+          ),
+        );
+      }
+    if (frozen) signal('frozen', null, () => this.frozenGrounds());
+    if (outside) signal('tolerance', value > limits[TOLERANCE_HIGH]! ? 'high' : 'low', () => this.grounds(pair(spec.tolerance)));
+    standing.settle(events, moment, true);
+    return events;
   }
 
-  private clear(events: EngineEvent[], detector: Detector, time: number, value: number, z: number | null): void {
-    const at = this.active.findIndex((alarm) => alarm.detector === detector);
-    if (at < 0) return;
-    const [alarm] = this.active.splice(at, 1);
-    const lasted = time - alarm!.raisedTime;
-    events.push({
-      event: 'cleared',
-      alarm: alarm!.alarm,
-      channel: this.spec.channel,
-      detector,
-      index: this.state[INDEX]!,
-      time,
-      value: Number.isFinite(value) ? value : null,
-      z,
-      signals: alarm!.signals,
-      lasted,
-      sentence: clearedSentence(this.spec, detector, lasted, alarm!.signals),
-    });
+  private moment(time: number, value: number, z: number | null): Moment {
+    return { index: this.index, time, value, z, band: this.bandInForce };
+  }
+
+  private grounds(limits: Readonly<Record<string, number>>, lnOdds: number | null = null): Grounds {
+    return { limits, readings: this.evidence.list(), lnOdds };
+  }
+
+  private frozenGrounds(): Grounds {
+    const { repeats, logChance, smallestStep } = this.frozen;
+    const limits = { repeats, step: smallestStep ?? NaN, chance: Math.exp(logChance), odds: this.spec.frozenOdds };
+    return this.grounds(limits, repeats * logChance);
   }
 
   /** Index of the newest reading, counted from 0; -1 before the first. */
@@ -337,8 +257,9 @@ export class Channel {
     return finite(this.state[Z]!);
   }
 
+  /** Standing alarms, oldest first. */
   get alarms(): readonly ActiveAlarm[] {
-    return this.active;
+    return this.standing.standing;
   }
 
   /** Mean of the rolling window, in O(1). NaN before the first reading. Likewise sd, min and max. */
@@ -392,3 +313,4 @@ export class Channel {
 }
 
 const finite = (x: number): number | null => (Number.isNaN(x) ? null : x);
+const pair = (limits: readonly [number, number] | null): Record<string, number> => (limits === null ? {} : { low: limits[0], high: limits[1] });

@@ -1,6 +1,8 @@
 import type { EvidenceReading } from './events.js';
 import { INDEX, TIME, VALUE } from './hand.js';
 
+const AT_TIME = TIME;
+const AT_VALUE = VALUE;
 const FEWEST = 32; // readings that evidence keeps at least
 
 /**
@@ -10,6 +12,8 @@ const FEWEST = 32; // readings that evidence keeps at least
 export class EvidenceRing {
   /** time and value by turns */
   private readonly ring: Float64Array;
+  /** place of the newest reading */
+  private readonly place = Int32Array.of(-2);
   private readonly mask: number;
 
   /** @param longest readings that the longest pattern spans */
@@ -19,30 +23,30 @@ export class EvidenceRing {
   ) {
     const kept = 2 ** Math.ceil(Math.log2(Math.max(FEWEST, longest))); // a place is then a mask and no division
     this.ring = new Float64Array(2 * kept);
-    this.mask = kept - 1;
+    this.mask = 2 * kept - 1;
   }
 
   /** Keeps the reading at hand. */
   push(): void {
-    const { hand, ring } = this;
-    const place = (hand[INDEX]! & this.mask) << 1;
-    ring[place] = hand[TIME]!;
-    ring[place + 1] = hand[VALUE]!;
+    const { hand, ring, place } = this;
+    const at = (place[0]! + 2) & this.mask;
+    place[0] = at;
+    ring[at] = hand[AT_TIME]!;
+    ring[at + 1] = hand[AT_VALUE]!;
   }
 
   /** The newest readings, oldest first. */
   list(): EvidenceReading[] {
-    const { ring, mask } = this;
-    const newest = this.hand[INDEX]!;
-    const readings: EvidenceReading[] = [];
-    for (let index = Math.max(0, newest - mask); index <= newest; index++) {
-      const place = (index & mask) << 1;
-      readings.push({ index, time: ring[place]!, value: ring[place + 1]! });
-    }
-    return readings;
+    const { ring, mask, place, hand } = this;
+    const newest = hand[INDEX]!;
+    const held = Math.min(newest + 1, ring.length / 2);
+    return Array.from({ length: held }, (_, i) => {
+      const at = (place[0]! - 2 * (held - 1 - i)) & mask;
+      return { index: newest - (held - 1 - i), time: ring[at]!, value: ring[at + 1]! };
+    });
   }
 
-  arrays(): Readonly<Record<string, Float64Array>> {
-    return { evidence: this.ring };
+  arrays(): Readonly<Record<string, Float64Array | Int32Array>> {
+    return { evidence: this.ring, evidencePlace: this.place };
   }
 }

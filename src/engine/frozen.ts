@@ -1,6 +1,7 @@
-import { upperTail } from '../stats/normal.js';
+import { between, upperTail } from '../stats/normal.js';
 import { VALUE } from './hand.js';
 
+const AT_VALUE = VALUE;
 const FEWEST = 4; // repeats that are never too few to be chance
 const STEPS = 20; // steps between unlike readings after which the least of them stands for the resolution
 
@@ -33,7 +34,7 @@ export class Frozen {
   /** Takes the reading at hand. @returns whether its value counts as frozen */
   step(): boolean {
     const { state: s } = this;
-    const value = this.hand[VALUE]!;
+    const value = this.hand[AT_VALUE]!;
     const last = s[0]!;
     if (value === last) return ++s[1]! >= s[4]!;
     s[0] = value;
@@ -78,14 +79,14 @@ export class Frozen {
   }
 }
 
-/** ln(2 Phi(r / 2 sigma) - 1). */
+/** ln(2 Phi(r / 2 sigma) - 1), without cancellation where that probability is near 0 or near 1. */
 export function logChance(resolution: number, sigma: number): number {
-  const outside = 2 * upperTail(resolution / (2 * sigma));
-  return outside < 0.5 ? Math.log1p(-outside) : Math.log(1 - outside);
+  const half = resolution / (2 * sigma);
+  return half < 1 ? Math.log(between(-half, half)) : Math.log1p(-2 * upperTail(half));
 }
 
-/** Repeats m, at least 4, at which p^m falls below the odds; infinite while p is not known. */
+/** Repeats m, at least 4, at which p^m falls below the odds; infinite while p is not known, or where every reading repeats. */
 export function repeatsNeeded(lnChance: number, odds: number): number {
-  if (lnChance !== lnChance || lnChance === 0) return Infinity;
-  return Math.max(FEWEST, Math.ceil(Math.log(odds) / lnChance));
+  if (!(lnChance < 0)) return Infinity;
+  return Math.max(FEWEST, Math.floor(Math.log(odds) / lnChance) + 1);
 }

@@ -1,5 +1,6 @@
 import { Z } from './hand.js';
 
+const AT_Z = Z;
 const PER_SIGMA = 4;
 const REACH = 6;
 const BINS = 2 * REACH * PER_SIGMA;
@@ -13,7 +14,7 @@ export class Histogram {
 
   /** Counts the reading at hand. */
   add(): void {
-    const z = this.hand[Z]!;
+    const z = this.hand[AT_Z]!;
     const at = z >= REACH ? BINS + 1 : z < -REACH ? 0 : ((z + REACH) * PER_SIGMA + 1) | 0;
     const count = this.counts[at]!;
     if (count < 0xffffffff) this.counts[at] = count + 1;

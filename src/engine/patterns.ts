@@ -1,7 +1,9 @@
 import { VALUE, Z } from './hand.js';
 import { RULES, SUPPLEMENTARY_RULES, type Rule, type Side } from './rules.js';
 
-// Places in the state.
+// Places in the reading at hand, and in the state.
+const AT_VALUE = VALUE;
+const AT_Z = Z;
 const RECENT = 0; // which of the newest readings lay beyond a line: four shift registers in one word, see below
 const ABOVE = 1; // readings in a row above the centre, and below it
 const BELOW = 2;
@@ -50,24 +52,21 @@ const LONGEST = 30; // a run of 2^30 readings grows no further
 export class Patterns {
   private readonly state = new Int32Array(LENGTH);
   private readonly before = new Float64Array(1);
-  private readonly one: number;
-  private readonly two: number;
-  private readonly three: number;
+  /** the lines at 1, 2 and 3 sigmas, stretched */
+  private readonly lines: Float64Array;
   private readonly enabled: number;
 
   /**
-   * @param scale g, which stretches the lines at 1, 2 and 3 sigmas
+   * @param k control limits in sigmas: the lines at 1, 2 and 3 sigmas are stretched by g = k / 3
    * @param sideRun length of the run that `eight-one-side` asks for
    */
   constructor(
     rules: readonly Rule[],
-    scale: number,
+    k: number,
     private readonly sideRun: number,
     private readonly hand: Float64Array,
   ) {
-    this.one = scale;
-    this.two = 2 * scale;
-    this.three = 3 * scale;
+    this.lines = Float64Array.of(k / 3, (2 * k) / 3, k);
     this.enabled = rules.reduce((mask, rule) => mask | RULE_BIT[rule], 0);
   }
 
@@ -77,12 +76,12 @@ export class Patterns {
    * @returns the mask of enabled rules that signal; 0 where all is quiet
    */
   step(): number {
-    const { state: s, hand, enabled } = this;
-    const z = hand[Z]!;
+    const { state: s, hand, lines, enabled } = this;
+    const z = hand[AT_Z]!;
     const far = Math.abs(z);
-    const above = -+(z > 0); // all bits, or none
-    const below = -+(z < 0);
-    const beyond = (+(far > this.one) << ONE) | (+(far > this.two) << TWO);
+    const above = 0 - +(z > 0); // all bits, or none
+    const below = 0 - +(z < 0);
+    const beyond = (+(far > lines[0]!) << ONE) | (+(far > lines[1]!) << TWO);
     const recent = ((s[RECENT]! << 1) & KEEP) | (beyond & above) | ((beyond & below) << SIDE_BITS);
     s[RECENT] = recent;
     const high = longer(s[ABOVE]!) & above;
@@ -90,14 +89,15 @@ export class Patterns {
     s[ABOVE] = high;
     s[BELOW] = low;
     const run = high | low; // one of them is 0
-    let fired = +(far > this.three) | HOLDS[recent & 0xff]! | HOLDS[recent >> SIDE_BITS]! | (+(run >= this.sideRun) << 3);
+    let fired = +(far > lines[2]!) | HOLDS[recent & 0xff]! | HOLDS[recent >> SIDE_BITS]! | (+(run >= this.sideRun) << 3);
     if ((enabled & SUPPLEMENTARY) !== 0) fired |= this.supplementary(far, run);
     return fired & enabled;
   }
 
   private supplementary(far: number, run: number): number {
-    const { state: s, before, hand, one } = this;
-    const value = hand[VALUE]!; // not z: the order of readings must not depend on its rounding
+    const { state: s, before, hand } = this;
+    const one = this.lines[0]!;
+    const value = hand[AT_VALUE]!; // not z: the order of readings must not depend on its rounding
     const last = before[0]!;
     before[0] = value;
     if (s[SEEN] === 0) {
@@ -112,8 +112,8 @@ export class Patterns {
       s[ZIGZAG] = level ? 1 : up === was > 1 && (was > 1 || was < -1) ? 2 : longer(s[ZIGZAG]!);
       s[RUN] = level ? 1 : up ? (was > 1 ? longer(was) : 2) : was < -1 ? -longer(-was) : -2;
     }
-    s[WITHIN] = longer(s[WITHIN]!) & -+(far < one);
-    s[OUTSIDE] = longer(s[OUTSIDE]!) & -+(far > one);
+    s[WITHIN] = longer(s[WITHIN]!) & (0 - +(far < one));
+    s[OUTSIDE] = longer(s[OUTSIDE]!) & (0 - +(far > one));
     return (
       (+(run >= 9) << 4) |
       (+(Math.abs(s[RUN]) >= 6) << 5) |
@@ -133,7 +133,7 @@ export class Patterns {
       case 'eight-outside-1':
         return null;
       default:
-        return this.hand[Z]! > 0 ? 'high' : 'low';
+        return this.hand[AT_Z]! > 0 ? 'high' : 'low';
     }
   }
 

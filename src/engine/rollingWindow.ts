@@ -15,6 +15,7 @@ import type { WindowStatistics } from './window.js';
  * aggregate of a whole block, is taken about the block's own mean.
  */
 
+const AT_VALUE = VALUE;
 // An aggregate of whole blocks, in doubles. Mean = anchor + offset; the sum is kept to twice the digits of a double.
 const N = 0;
 const ANCHOR = 1;
@@ -88,7 +89,7 @@ export class RollingWindow {
   /** Takes the finite reading in hand. */
   push(): void {
     const { place, fresh } = this;
-    const x = this.hand[VALUE]!;
+    const x = this.hand[AT_VALUE]!;
     const at = place[NEXT]!;
     if (at === 0 && place[FULL] === 0) fresh[ABOUT] = x;
     this.values[at] = x;

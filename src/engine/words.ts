@@ -11,17 +11,16 @@ export interface Facts {
   readonly z: number | null;
   readonly odds: number | null;
   readonly band: Band | null;
-  /** Frozen: readings with the same value, and ln of the probability that noise alone repeats it. */
-  readonly repeats: number;
-  readonly lnOdds: number;
-  /** Silent: ms since the last reading, or since the watch began. */
-  readonly silence: number;
+  /** ln of the probability that noise alone does this; null where it is that of z. */
+  readonly lnOdds: number | null;
+  /** What the detector judged by, as the evidence has it. */
+  readonly limits: Readonly<Record<string, number>>;
 }
 
 /** An alarm in plain words: what happened, with the value, how far out, and how seldom that happens by chance. */
 export function raisedSentence(spec: ChannelSpec, facts: Facts): string {
   const { channel } = spec;
-  const { detector, side, value, z, odds, band } = facts;
+  const { detector, side, value, z, odds, band, limits } = facts;
   const quantity = (x: number): string => `${formatValue(x, band?.sigma ?? null, spec.resolution)}${spec.unit && ' ' + spec.unit}`;
   const now = value === null ? '' : quantity(value);
   const far =
@@ -51,9 +50,9 @@ export function raisedSentence(spec: ChannelSpec, facts: Facts): string {
     case 'eight-outside-1':
       return `Eight readings of ${channel} in a row avoid the centre: its spread has become larger, or two states alternate; now ${now}.`;
     case 'frozen':
-      return `${channel} has shown ${now} for ${groups(facts.repeats + 1)} readings: noise alone would repeat it so ${chance(facts.lnOdds)}; the sensor seems frozen.`;
+      return `${channel} has shown ${now} for ${groups((limits.repeats ?? 0) + 1)} readings: noise alone would repeat it so ${chance(facts.lnOdds ?? 0)}; the sensor seems frozen.`;
     case 'silent':
-      return `Nothing has come from ${channel} for ${formatDuration(facts.silence)}${spec.every === null ? '' : `; a reading is due every ${formatDuration(spec.every)}`}.`;
+      return `Nothing has come from ${channel} for ${formatDuration(limits.silence ?? NaN)}${spec.every === null ? '' : `; a reading is due every ${formatDuration(spec.every)}`}.`;
     case 'off-scale':
       return value === null || !Number.isFinite(value)
         ? `${channel} reports ${value === null ? 'no number' : formatValue(value)}: the instrument cannot measure.`
