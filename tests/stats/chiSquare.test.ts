@@ -14,7 +14,7 @@ describe('chi-square', () => {
     }
   });
   it('every quantile of tests/reference/normal.json, which is given to 1e-10', () => {
-    const { chi2 } = reference<{ chi2: { df: number; p: number; quantile: number }[] }>('normal.json');
+    const { chi2 } = reference('normal.json') as { chi2: { df: number; p: number; quantile: number }[] };
     for (const { df, p, quantile } of chi2) close(chiSquareQuantile(p, df), quantile, 1e-10, [df, p]);
   });
   // Percentage points as every statistics handbook prints them; from memory.

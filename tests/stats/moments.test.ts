@@ -7,7 +7,7 @@ import { close, reference } from './fixture.js';
 interface Strd {
   sets: { id: string; certified: { mean: number; sd: number; lag1: number }; data: string[] }[];
 }
-const { sets } = reference<Strd>('strd.json');
+const { sets } = reference('strd.json') as Strd;
 
 /** Exact moments of the doubles, in whole numbers of 2^-60. */
 function exact(values: readonly number[]): { mean: number; sd: number; lag1: number } {

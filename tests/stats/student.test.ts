@@ -14,7 +14,7 @@ describe("Student's t", () => {
     }
   });
   it('every quantile of tests/reference/normal.json, which is given to 1e-10', () => {
-    const { t } = reference<{ t: { df: number; p: number; quantile: number }[] }>('normal.json');
+    const { t } = reference('normal.json') as { t: { df: number; p: number; quantile: number }[] };
     for (const { df, p, quantile } of t) close(tQuantile(p, df), quantile, 1e-10, [df, p]);
   });
   // Percentage points as every statistics handbook prints them; from memory.
