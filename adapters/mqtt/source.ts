@@ -11,6 +11,7 @@ import { Redelivery } from './redelivery.js';
 import { connectionTrouble, goodbye } from './trouble.js';
 
 const STOP_WITHIN = 1000; // ms for acknowledgements, and as much for the good-bye
+const BRIEF = 5000; // ms that a connection lasts at most where two clients of one identifier oust each other
 const REFUSED_FROM = 128; // return codes of SUBACK from here on are refusals
 
 /**
@@ -39,6 +40,7 @@ class MqttSource implements Source {
   private retry: NodeJS.Timeout | undefined;
   private wait: number;
   private openSince = NaN;
+  private brief = 0; // connections in a row that were cut soon and without a word
   private wasOpen = false;
   private trouble: string | null = null;
   private said = '';
@@ -131,14 +133,21 @@ class MqttSource implements Source {
   private lost(): void {
     this.acknowledger?.drop();
     if (this.stopping) return;
-    const { options, broker, client, trouble } = this;
-    if (performance.now() - this.openSince > options.retryTo) this.wait = options.retryFrom; // not before: one that opens and falls at once is not tried at full pace
+    const { options, client } = this;
+    const lasted = performance.now() - this.openSince;
+    if (lasted > options.retryTo) this.wait = options.retryFrom; // not before: one that opens and falls at once is not tried at full pace
+    if (!Number.isNaN(lasted)) this.brief = this.trouble === null && lasted < BRIEF ? this.brief + 1 : 0;
+    this.say(this.wasOpen ? 'lost' : 'connecting', `${this.trouble ?? this.lostWords()} Trying again.`);
     this.openSince = NaN;
     this.trouble = null;
-    this.say(this.wasOpen ? 'lost' : 'connecting', `${trouble ?? `The connection to ${broker} is lost.`} Trying again.`);
     clearTimeout(this.retry);
     this.retry = setTimeout(() => this.connect(() => client.reconnect()), this.wait * (0.75 + Math.random() * 0.5));
     this.wait = Math.min(this.wait * 2, options.retryTo);
+  }
+
+  private lostWords(): string {
+    const lost = `The connection to ${this.broker} is lost`;
+    return this.brief < 2 ? `${lost}.` : `${lost} again and again: does another client use the identifier '${clean(this.options.clientId, 60)}'?`;
   }
 
   private take(packet: IPublishPacket, done: (error?: Error) => void): void {

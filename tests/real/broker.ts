@@ -50,11 +50,6 @@ export class Broker {
     return `mqtt://127.0.0.1:${this.port}`;
   }
 
-  /** What it has written to its log. */
-  get log(): string {
-    return this.said;
-  }
-
   async start(): Promise<void> {
     const child = spawn('mosquitto', ['-c', join(this.folder, 'mosquitto.conf')], { stdio: ['ignore', 'ignore', 'pipe'] });
     child.on('error', (error) => (this.said += String(error)));
