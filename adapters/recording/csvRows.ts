@@ -1,65 +1,84 @@
-import { readNumber } from '../decoding/number.js';
-import type { Wanted } from '../source.js';
-import { findColumns, namesOf, type Columns } from './columns.js';
+import { clean } from '../../src/text/clean.js';
+import { UserError } from '../../src/text/errors.js';
+import { isBlank, readNumber } from '../decoding/number.js';
+import { findColumns, type ChannelNames, type Columns } from './columns.js';
 import { LineCarry, LONGEST_LINE } from './lineCarry.js';
-import type { RowReader, Rows, SpacedTimes } from './reader.js';
+import { splitQuoted } from './quotes.js';
+import type { RowReader, Rows } from './reader.js';
+import type { SpacedTimes } from './spacedTimes.js';
 import { TimeColumn } from './timeColumn.js';
 
 const LF = 0x0a;
 const CR = 0x0d;
 const QUOTE = 0x22;
 
+/** A row in quotes may go on over this many lines or characters; beyond, its quote is taken for a stray one. */
+const MOST_LINES = 64;
+const MOST_HELD = 1 << 16;
+
 /**
  * Rows of a CSV recording. An empty cell is a missing reading; a cell that is no number is counted; a row with fewer
- * columns than the header gives what it has and is counted.
+ * columns than the header gives what it has and is counted. Without a time column each row takes its place in time,
+ * whatever its cells hold.
  */
 export class CsvRows implements RowReader {
   private readonly carry: LineCarry;
   private columns: Columns | null = null;
   private delimiter = 0x2c;
-  private last = 0; // the last column that is of use
   private readonly number = new Float64Array(1);
   private readonly times = new TimeColumn();
   /** Bounds of the cells of the row at hand, as far as they are of use. */
   private starts = new Int32Array(0);
   private ends = new Int32Array(0);
-  private readonly slotByName = new Map<string, number>();
+  /** Lines of a row whose quotes are still open. */
+  private held: string[] = [];
+  private heldLength = 0;
 
   constructor(
-    private readonly wanted: readonly Wanted[],
+    private readonly channels: ChannelNames,
     private readonly rows: Rows,
     private readonly spaced: SpacedTimes,
     private readonly file: string,
   ) {
-    for (const channel of [...wanted].reverse()) for (const name of namesOf(channel).reverse()) this.slotByName.set(name, channel.slot);
     this.carry = new LineCarry(LONGEST_LINE, {
       block: (bytes, start, end) => this.block(bytes, start, end),
       tooLong: (bytes) => rows.fault('too-long', bytes.toString('utf8', 0, 60)),
     });
   }
 
+  get timed(): boolean | null {
+    return this.columns && this.columns.time >= 0;
+  }
+
   push(bytes: Buffer): void {
     this.carry.push(bytes);
   }
 
-  end(): void {
-    this.carry.end();
+  end(torn: boolean): void {
+    this.carry.end(torn);
+    while (this.held.length > 0) this.letGo();
+    if (this.columns === null) throw new UserError(`The recording ${clean(this.file, 200)} has no header line.`, 'Its first line must name the columns.');
+    if (this.columns.long && this.channels.saw) this.channels.require(this.file, 'row');
   }
 
   private block(bytes: Buffer, start: number, end: number): void {
     let at = start;
     while (at < end) {
-      if (this.columns === null) {
+      if (this.columns !== null && this.held.length === 0) at = this.row(bytes, at);
+      else {
         const stop = bytes.indexOf(LF, at);
-        this.header(bytes, at, bytes[stop - 1] === CR ? stop - 1 : stop);
+        const line = bytes.toString('utf8', at, bytes[stop - 1] === CR && stop > at ? stop - 1 : stop);
+        if (this.columns === null) this.header(line);
+        else this.quoted(line);
         at = stop + 1;
-      } else at = this.row(bytes, at);
+      }
     }
   }
 
   /** Splits one row into cells while it looks for its end. @returns the place after the row */
   private row(bytes: Buffer, start: number): number {
-    const { starts, ends, last, delimiter } = this;
+    const { starts, ends, delimiter } = this;
+    const { last } = this.columns!;
     let cell = 0;
     let from = start;
     let at = start;
@@ -77,7 +96,11 @@ export class CsvRows implements RowReader {
         cell++;
         from = at + 1;
       } else if (byte === LF) break;
-      else if (byte === QUOTE) return this.quotedRow(bytes, start);
+      else if (byte === QUOTE && at === from) {
+        const stop = bytes.indexOf(LF, at);
+        this.quoted(bytes.toString('utf8', start, bytes[stop - 1] === CR ? stop - 1 : stop));
+        return stop + 1;
+      }
       at++;
     }
     const stop = at > from && bytes[at - 1] === CR ? at - 1 : at;
@@ -89,87 +112,77 @@ export class CsvRows implements RowReader {
     return at + 1;
   }
 
-  /** A row with quotes (RFC 4180) is unquoted into a row of its own; a line break within quotes is not taken. */
-  private quotedRow(bytes: Buffer, start: number): number {
-    const stop = bytes.indexOf(LF, start);
-    const cells = splitQuoted(bytes.toString('utf8', start, bytes[stop - 1] === CR ? stop - 1 : stop), String.fromCharCode(this.delimiter));
-    const plain = Buffer.from(cells.map((cell) => cell.replace(/["\n\r]/g, ' ').replaceAll(String.fromCharCode(this.delimiter), ' ')).join(String.fromCharCode(this.delimiter)) + '\n');
-    this.row(plain, 0);
-    return stop + 1;
+  /** One more line of a row with quotes. Once they are closed, its cells are laid out as a row without. */
+  private quoted(line: string): void {
+    this.held.push(line);
+    this.heldLength += line.length;
+    const mark = String.fromCharCode(this.delimiter);
+    const cells = splitQuoted(this.held.join('\n'), mark);
+    if (cells) {
+      this.held = [];
+      this.heldLength = 0;
+      const plain = cells.map((cell) => cell.replace(/["\n\r]/g, ' ').replaceAll(mark, ' '));
+      this.row(Buffer.from(plain.join(mark) + '\n'), 0);
+    } else if (this.held.length >= MOST_LINES || this.heldLength >= MOST_HELD) this.letGo();
+  }
+
+  /** The quote that opened the held row was a stray one: its line is counted, and those after it are read for themselves. */
+  private letGo(): void {
+    const [first, ...others] = this.held;
+    this.held = [];
+    this.heldLength = 0;
+    this.rows.fault('missing-field', first!.slice(0, 60));
+    for (const line of others) {
+      if (this.held.length > 0) this.quoted(line);
+      else this.row(Buffer.from(line + '\n'), 0);
+    }
   }
 
   private take(bytes: Buffer, cells: number, rowStart: number, rowEnd: number): void {
-    const { starts, ends, columns, number, rows } = this;
-    const { slots, time: timeAt, long } = columns!;
-    const have = Math.min(cells, this.last + 1);
+    const { starts, ends, rows } = this;
+    const { width, time: timeAt, long, places, slots, last } = this.columns!;
     let time = NaN;
     if (timeAt >= 0) {
-      time = timeAt < have ? this.times.read(bytes, starts[timeAt]!, ends[timeAt]!) : NaN;
+      time = timeAt < cells ? this.times.read(bytes, starts[timeAt]!, ends[timeAt]!) : NaN;
       if (time !== time) {
-        rows.fault('bad-time', bytes.toString('utf8', rowStart, Math.min(rowEnd, rowStart + 60)));
+        rows.fault('bad-time', sample(bytes, rowStart, rowEnd));
         return;
       }
     }
-    if (cells < slots.length) rows.fault('missing-field', bytes.toString('utf8', rowStart, Math.min(rowEnd, rowStart + 60)));
+    if (cells < width) rows.fault('missing-field', sample(bytes, rowStart, rowEnd));
     if (long) {
-      if (have < 3) return;
-      const slot = this.slotByName.get(bytes.toString('utf8', starts[long.channel], ends[long.channel]).trim());
-      if (slot !== undefined) this.cell(bytes, starts[long.value]!, ends[long.value]!, slot, time);
+      if (cells <= last) return;
+      const name = bytes.toString('utf8', starts[long.channel], ends[long.channel]).trim();
+      for (const slot of this.channels.of(name)) this.cell(bytes, starts[long.value]!, ends[long.value]!, slot, time);
       return;
     }
-    for (let column = 0; column < have; column++) {
-      const slot = slots[column]!;
-      if (slot < 0) continue;
-      const from = starts[column]!;
-      const to = ends[column]!;
-      if (from === to) {
-        if (timeAt < 0) this.spaced.take(slot); // a missing reading takes its place in time
-        continue;
-      }
-      if (readNumber(bytes, from, to, number)) rows.reading(slot, timeAt < 0 ? this.spaced.take(slot) : time, number[0]!);
-      else rows.fault('not-a-number', bytes.toString('utf8', from, Math.min(to, from + 60)));
+    for (let i = 0; i < places.length; i++) {
+      const place = places[i]!;
+      const slot = slots[i]!;
+      const at = timeAt < 0 ? this.spaced.take(slot) : time;
+      if (place < cells) this.cell(bytes, starts[place]!, ends[place]!, slot, at);
     }
   }
 
   private cell(bytes: Buffer, from: number, to: number, slot: number, time: number): void {
     if (from === to) return;
     if (readNumber(bytes, from, to, this.number)) this.rows.reading(slot, time, this.number[0]!);
-    else this.rows.fault('not-a-number', bytes.toString('utf8', from, Math.min(to, from + 60)));
+    else if (!empty(bytes, from, to)) this.rows.fault('not-a-number', sample(bytes, from, to));
   }
 
-  private header(bytes: Buffer, start: number, end: number): void {
-    const text = bytes.toString('utf8', start, end);
-    const delimiter = [',', ';', '\t'].reduce((best, mark) => (count(text, mark) > count(text, best) ? mark : best));
+  private header(line: string): void {
+    const delimiter = [',', ';', '\t'].reduce((best, mark) => (count(line, mark) > count(line, best) ? mark : best));
     this.delimiter = delimiter.charCodeAt(0);
-    this.columns = findColumns(splitQuoted(text, delimiter), this.wanted, this.file);
-    const { slots, time, long } = this.columns;
-    this.last = Math.max(time, long?.channel ?? 0, long?.value ?? 0, slots.findLastIndex((slot) => slot >= 0));
-    this.starts = new Int32Array(this.last + 1);
-    this.ends = new Int32Array(this.last + 1);
+    this.columns = findColumns(splitQuoted(line, delimiter) ?? line.split(delimiter), this.channels, this.file);
+    this.starts = new Int32Array(this.columns.last + 1);
+    this.ends = new Int32Array(this.columns.last + 1);
   }
 }
 
+const sample = (bytes: Buffer, from: number, to: number): string => bytes.toString('utf8', from, Math.min(to, from + 60));
 const count = (text: string, mark: string): number => text.split(mark).length - 1;
 
-/** The cells of one line of CSV, quotes taken off and doubled quotes made one. */
-export function splitQuoted(line: string, delimiter: string): string[] {
-  const cells: string[] = [];
-  let cell = '';
-  let quoted = false;
-  for (let i = 0; i < line.length; i++) {
-    const mark = line[i]!;
-    if (quoted) {
-      if (mark !== '"') cell += mark;
-      else if (line[i + 1] === '"') {
-        cell += '"';
-        i++;
-      } else quoted = false;
-    } else if (mark === '"') quoted = true;
-    else if (mark === delimiter) {
-      cells.push(cell);
-      cell = '';
-    } else cell += mark;
-  }
-  cells.push(cell);
-  return cells;
+function empty(bytes: Buffer, from: number, to: number): boolean {
+  for (let at = from; at < to; at++) if (!isBlank(bytes[at]!)) return false;
+  return true;
 }

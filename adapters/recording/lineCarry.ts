@@ -25,7 +25,10 @@ export class LineCarry {
     let start = 0;
     if (this.carried > 0 || this.dropping) {
       const at = bytes.indexOf(LF);
-      if (at < 0) { this.keep(bytes); return; }
+      if (at < 0) {
+        this.keep(bytes);
+        return;
+      }
       if (this.dropping) {
         this.dropping = false;
         start = at + 1;
@@ -45,8 +48,9 @@ export class LineCarry {
     if (last + 1 < bytes.length) this.keep(bytes.subarray(Math.max(start, last + 1)));
   }
 
-  end(): void {
-    if (this.carried > 0) {
+  /** There are no more bytes. @param torn whether to leave out a last line without an end, since it may lack a part */
+  end(torn = false): void {
+    if (this.carried > 0 && !torn) {
       const line = Buffer.concat([...this.parts, Buffer.of(LF)]);
       this.forget();
       this.lines.block(line, 0, line.length);

@@ -20,6 +20,8 @@ class RecordingSource implements Source {
   readonly ended: Promise<void>;
   private finished!: () => void;
   private stopped = false;
+  private halt!: () => void;
+  private readonly halted: Promise<void>;
   private running: Promise<void> | null = null;
 
   constructor(
@@ -28,6 +30,7 @@ class RecordingSource implements Source {
     private readonly wanted: readonly Wanted[],
   ) {
     this.ended = new Promise((resolve) => (this.finished = resolve));
+    this.halted = new Promise((resolve) => (this.halt = resolve));
   }
 
   start(sink: Sink): void {
@@ -37,6 +40,7 @@ class RecordingSource implements Source {
 
   async stop(): Promise<void> {
     this.stopped = true;
+    this.halt();
     await this.running;
     this.finished();
   }
@@ -59,7 +63,7 @@ class RecordingSource implements Source {
         for (let at = 0; at < chunk.length && !this.stopped; at += SLICE) {
           reader.push(chunk.subarray(at, at + SLICE));
           const pressure = sink.pressure();
-          if (pressure) await pressure.catch(() => undefined);
+          if (pressure) await Promise.race([pressure.catch(() => undefined), this.halted]);
           else await turn();
         }
         if (this.stopped) break;
@@ -67,7 +71,7 @@ class RecordingSource implements Source {
       }
       if (this.stopped) sink.phase('stopped', `${file} is no longer read.`);
       else {
-        reader.end();
+        reader.end(bytes.torn() !== null);
         sink.phase('ended', bytes.torn() ?? `${file} has been read to its end.`);
       }
     } catch (error) {

@@ -3,6 +3,8 @@ import { readNumber } from '../decoding/number.js';
 
 /** Epoch numbers from this magnitude on count milliseconds, below it seconds: 1e11 ms is March 1973, 1e11 s the year 5138. */
 const MILLISECONDS_FROM = 1e11;
+/** From this magnitude on it is no time: it may be microseconds or nanoseconds, which are not guessed at. */
+const NO_TIME_FROM = 1e14;
 const DAY = 86_400_000;
 
 /**
@@ -26,9 +28,10 @@ export class TimeColumn {
   }
 
   epoch(value: number): number {
-    if (value - value !== 0) return NaN;
+    if (!(Math.abs(value) < NO_TIME_FROM)) return NaN;
     if (this.scale === 0) this.scale = Math.abs(value) < MILLISECONDS_FROM ? 1000 : 1;
     if (this.scale === 1) return value;
+    if (Math.abs(value) >= MILLISECONDS_FROM) return NaN; // a year after 5138: the unit has changed on the way
     return Math.abs(value) < 9e9 ? Math.round(value * 1e6) / 1e3 : value * 1e3; // to whole microseconds
   }
 

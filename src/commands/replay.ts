@@ -22,6 +22,7 @@ interface Options {
   readonly readings?: boolean;
   readonly window?: string;
   readonly channel?: string[];
+  readonly columns?: string[];
   readonly failOn?: string;
 }
 
@@ -34,22 +35,32 @@ export async function run(args: readonly string[]): Promise<number> {
     .option('--readings', 'with --json: a line for each reading too, with the statistics of the rolling window')
     .option('--window <n>', 'readings in the rolling window')
     .option('--channel <name...>', 'only these channels')
+    .option('--columns <name=channel...>', 'which column holds which channel, where their names differ')
     .option('--fail-on <what>', "'alarm': exit status 1 when an alarm was raised");
   const done = parse(command, args);
   if (done !== null) return done;
   const options = command.opts<Options>();
   if (options.failOn !== undefined && options.failOn !== 'alarm') throw new UserError(`--fail-on knows no '${clean(options.failOn, 40)}'.`, "Write '--fail-on alarm'.");
   const recording = command.args[0]!;
-  const { specs, fields } = channelsOf(options);
-  const raised = await (options.json ? replayJson(recording, specs, fields, options.readings ?? false) : replayText(recording, specs, fields));
+  const asked = channelsOf(options);
+  const raised = await (options.json ? replayJson(recording, asked, options.readings ?? false) : replayText(recording, asked));
   return raised > 0 && options.failOn === 'alarm' ? ANSWER_IS_NO : FINE;
 }
 
-function channelsOf({ stand: file, channel: only, window }: Options): { specs: ChannelSpec[]; fields: (string | null)[] } {
+/** The channels to replay, and where in the recording they are looked for. */
+interface Asked {
+  readonly specs: readonly ChannelSpec[];
+  readonly fields: readonly (string | null)[];
+  /** Columns named on the command line, by channel. */
+  readonly columns: ReadonlyMap<string, string>;
+}
+
+function channelsOf({ stand: file, channel: only, columns, window }: Options): Asked {
   const stand = loadStand(file);
   requireTextbook(stand);
   const known = stand.channels.map(({ spec }) => spec.channel);
-  for (const name of only ?? [])
+  const named = columnsOf(columns ?? []);
+  for (const name of [...(only ?? []), ...named.keys()])
     if (!known.includes(name)) throw new UserError(`The stand has no channel '${clean(name, 60)}'.`, `It has: ${clean(known.join(', '), 200)}.`);
   const size = window === undefined ? null : Number(window);
   if (size !== null && !(Number.isInteger(size) && size >= 2 && size <= 1e6)) throw new UserError(`A window of '${clean(window, 40)}' readings cannot be.`, 'Give a whole number from 2 to 1000000.');
@@ -57,7 +68,32 @@ function channelsOf({ stand: file, channel: only, window }: Options): { specs: C
   return {
     specs: chosen.map(({ spec }) => (size === null ? spec : { ...spec, window: size })),
     fields: chosen.map(({ origin }) => origin.field),
+    columns: named,
   };
+}
+
+/** `NAME=CHANNEL`, as often as it stands. @returns the column of each channel named */
+function columnsOf(pairs: readonly string[]): Map<string, string> {
+  const columns = new Map<string, string>();
+  for (const pair of pairs) {
+    const at = pair.lastIndexOf('='); // a channel's name holds none, a column's may
+    if (at < 1 || at === pair.length - 1) throw new UserError(`--columns does not understand '${clean(pair, 60)}'.`, 'Write --columns NAME=CHANNEL.');
+    columns.set(pair.slice(at + 1), pair.slice(0, at));
+  }
+  return columns;
+}
+
+/** What is to be known of a recording besides its readings, in sentences. */
+function remarks({ specs, columns }: Asked, { absent, timed, torn }: Replayed, faults: FaultCount): string[] {
+  const gone = absent.map((slot) => specs[slot]!.channel);
+  for (const channel of gone)
+    if (columns.has(channel)) throw new UserError(`The recording has no column '${clean(columns.get(channel), 60)}' for the channel ${clean(channel, 60)}.`);
+  return [
+    gone.length > 0 && `Not in the recording: ${clean(gone.join(', '), 300)}.`,
+    !timed && 'The recording has no times: its readings are spaced by what the stand file says under every (else 1 s), from 1970 on.',
+    faults.words,
+    torn,
+  ].filter((words) => typeof words === 'string');
 }
 
 class FaultCount {
@@ -75,12 +111,12 @@ class FaultCount {
 }
 
 /** @returns the number of alarms raised */
-async function replayJson(recording: string, specs: readonly ChannelSpec[], fields: readonly (string | null)[], readings: boolean): Promise<number> {
+async function replayJson(recording: string, asked: Asked, readings: boolean): Promise<number> {
   const out = new LineWriter();
   const faults = new FaultCount();
   const progress = new Progress('replay');
   let raised = 0;
-  const { torn } = await replay(recording, specs, fields, {
+  const replayed = await replay(recording, asked.specs, asked.fields, {
     onEvents: (events) => {
       for (const event of events) {
         if (event.event === 'raised') raised++;
@@ -91,10 +127,10 @@ async function replayJson(recording: string, specs: readonly ChannelSpec[], fiel
     onFault: (fault) => faults.add(fault),
     onProgress: (fraction) => progress.update(fraction),
     drained: () => out.drained(),
-  });
+  }, asked.columns);
   progress.stop();
   out.flush();
-  for (const words of [faults.words, torn]) if (words) process.stderr.write(`kilter: ${words}\n`);
+  for (const words of remarks(asked, replayed, faults)) process.stderr.write(`kilter: ${words}\n`);
   return raised;
 }
 
@@ -112,7 +148,7 @@ function readingLine(channel: Channel, time: number): string {
   });
 }
 
-async function replayText(recording: string, specs: readonly ChannelSpec[], fields: readonly (string | null)[]): Promise<number> {
+async function replayText(recording: string, asked: Asked): Promise<number> {
   const faults = new FaultCount();
   const progress = new Progress('replay');
   const alarms: AlarmRaised[] = [];
@@ -130,12 +166,12 @@ async function replayText(recording: string, specs: readonly ChannelSpec[], fiel
       if (alarms.length < SHOWN) alarms.push(event);
     }
   };
-  const replayed = await replay(recording, specs, fields, {
+  const replayed = await replay(recording, asked.specs, asked.fields, {
     onEvents: (events) => events.forEach(take),
     onFault: (fault) => faults.add(fault),
     onProgress: (fraction) => progress.update(fraction),
     drained: () => null,
-  });
+  }, asked.columns);
   progress.stop();
   describe(replayed, signals, counts, performance.now() - began);
   if (first > 0) {
@@ -143,7 +179,7 @@ async function replayText(recording: string, specs: readonly ChannelSpec[], fiel
     for (const { time, sentence } of alarms) say(`${isoTime(time) ?? time}  ${sentence}`);
     if (first > alarms.length) say(`and ${groups(first - alarms.length)} more alarms; --json gives them all.`);
   }
-  for (const words of [faults.words, replayed.torn]) if (words) say(words);
+  for (const words of remarks(asked, replayed, faults)) say(words);
   return first;
 }
 

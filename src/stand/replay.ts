@@ -23,12 +23,19 @@ export interface Replayed {
   readonly readings: number;
   /** The recording stopped in the middle (a torn gzip); else null. */
   readonly torn: string | null;
+  /** Whether the recording says when its readings were taken; if not they are spaced by `every` from the epoch on. */
+  readonly timed: boolean;
+  /** Places of the channels that the recording does not hold. */
+  readonly absent: readonly number[];
 }
 
 /**
  * A recording through the engine, as fast as it goes. A channel's column is the one that bears its name, else the one
  * of its field. The same recording and specifications give the same events on every run: time comes from the recording.
+ * A silence is told before the reading that ends it, as of the moment at which it was one; that of a channel which
+ * never speaks again at the end of the recording, if the other channels' readings show that it was one.
  * @param fields for each channel the field of the stand file, or null
+ * @param columns for channels whose name in the recording was given: that name, which is then the only one
  * @throws UserError where the recording cannot be read or has none of the channels
  */
 export async function replay(
@@ -36,14 +43,18 @@ export async function replay(
   specs: readonly ChannelSpec[],
   fields: readonly (string | null)[],
   listener: ReplayListener,
+  columns: ReadonlyMap<string, string> = new Map(),
 ): Promise<Replayed> {
   const channels = specs.map((spec) => new Channel(spec));
   const wanted = specs.map(({ channel, every }, slot): Wanted => {
     const field = fields[slot] ?? null;
+    const column = columns.get(channel);
     // The channel's name comes first here, since recordings are kilter's own as often as an instrument's.
-    return { slot, channel: field ?? channel, field: channel, topic: null, value: null, time: null, sequence: null, every };
+    const [first, second] = column === undefined ? [channel, field ?? channel] : [column, column];
+    return { slot, channel: second, field: first, topic: null, value: null, time: null, sequence: null, every };
   });
   let readings = 0;
+  let newest = -Infinity;
   const { onReading } = listener;
   const bytes = await recordingBytes(path);
   const reader = new RecordingReader(
@@ -52,6 +63,7 @@ export async function replay(
       reading: (slot, time, value) => {
         const channel = channels[slot]!;
         readings++;
+        if (time > newest) newest = time;
         const gap = silenceBefore(channel, time);
         if (gap !== null) listener.onEvents(channel.tick(gap));
         const events = channel.take(time, value);
@@ -67,6 +79,10 @@ export async function replay(
     listener.onProgress(bytes.fraction());
     await (listener.drained() ?? turn());
   }
-  reader.end();
-  return { channels, readings, torn: bytes.torn() };
+  reader.end(bytes.torn() !== null);
+  for (const channel of channels) {
+    const gap = silenceBefore(channel, newest);
+    if (gap !== null) listener.onEvents(channel.tick(gap));
+  }
+  return { channels, readings, torn: bytes.torn(), timed: reader.timed ?? false, absent: reader.absent };
 }
