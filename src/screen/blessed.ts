@@ -10,6 +10,9 @@ interface Program {
   output: NodeJS.WriteStream;
   setMouse(modes: Record<string, boolean>, on: boolean): void;
   enableMouse(): void;
+  write(text: string): boolean;
+  /** The same, by the name under which blessed's own buffer calls it. */
+  _owrite(text: string): boolean;
 }
 
 export interface BlessedScreen extends Omit<Widgets.Screen, 'program' | 'tput'> {

@@ -28,6 +28,7 @@ export class TokenInput extends Readable {
 
   constructor(private readonly source: Terminal) {
     super({ read: () => undefined });
+    source.on('error', () => undefined); // the keyboard has gone; what is written tells of the terminal
     source.on('data', (data: Buffer | string) => {
       this.buffer += typeof data === 'string' ? data : this.decoder.write(data);
       if (this.buffer.length > LONGEST) this.buffer = '';

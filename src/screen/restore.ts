@@ -1,5 +1,6 @@
 import { constants as files, closeSync, openSync, writeSync } from 'node:fs';
 import type { BlessedScreen } from './blessed.js';
+import { mute, watchTerminal } from './terminalGone.js';
 
 /** Off: mouse, focus and paste modes, keypad; attributes, character set; cursor shown; main screen. Each does no harm where it was off. */
 export const RESET =
@@ -39,6 +40,15 @@ export function restoreOnEnd(
       // the terminal has gone
     }
   };
+  const gone = (): void => {
+    mute(screen);
+    errorsTaken = null; // they stay ours: some may still come
+  };
+  let errorsTaken: (() => void) | null = watchTerminal(output, () => {
+    gone();
+    restore();
+    onSignal('SIGHUP');
+  });
   const fatal = (error: unknown): void => {
     restore();
     onFatal(error);
@@ -46,6 +56,7 @@ export function restoreOnEnd(
   const handlers = new Map<NodeJS.Signals, () => void>();
   for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP', 'SIGQUIT'] as const)
     handlers.set(signal, () => {
+      if (signal === 'SIGHUP') gone();
       restore();
       onSignal(signal);
     });
@@ -70,6 +81,7 @@ export function restoreOnEnd(
   return {
     restore,
     release: () => {
+      errorsTaken?.();
       for (const [signal, handler] of handlers) process.off(signal, handler);
       process.off('exit', restore);
       process.off('uncaughtException', fatal);

@@ -16,7 +16,7 @@ export function stateWords(view: StandView): string {
   const settling = view.channels.filter(({ state }) => state === 'settling').length;
   if (waiting === total) return 'waiting for the first readings';
   if (settling + waiting > 0) return `${settling + waiting} of ${total} ${total === 1 ? 'channel' : 'channels'} still settling, no alarm`;
-  return total === 1 ? 'the channel is in its band' : `all ${total} channels in their bands`;
+  return total === 1 ? 'the channel is in its band' : `all ${total} channels are in their bands`;
 }
 
 /** What to do next, by what is most pressing. */

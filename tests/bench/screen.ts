@@ -11,7 +11,7 @@ import { initialUi } from '../../src/screen/ui.js';
 import { inventedStand } from '../screen/inventedStand.js';
 import type { BenchRow } from './row.js';
 
-const FRAMES = 150;
+const FRAMES = 60;
 const PROFILE = terminalProfile({ TERM: 'xterm-256color', LANG: 'C.UTF-8' });
 const Line = ContribLine as new (options: object) => { setData(series: readonly object[]): void };
 
@@ -68,7 +68,7 @@ function contribLine(width: number, height: number): Cost {
   });
 }
 
-/** The best of five rounds: the least disturbed. */
+/** The best of three rounds: the least disturbed. */
 function measure(width: number, height: number, start: (screen: BlessedScreen) => (frame: number) => void): Cost {
   let bytes = 0;
   const output = Object.assign(
@@ -85,7 +85,7 @@ function measure(width: number, height: number, start: (screen: BlessedScreen) =
   const screen = openBlessed(PROFILE, input, output);
   const next = start(screen);
   let best = Infinity;
-  for (let round = 0; round < 5; round++) {
+  for (let round = 0; round < 3; round++) {
     if (round === 1) bytes = 0; // the first draws all anew
     const began = performance.now();
     for (let frame = 0; frame < FRAMES; frame++) {
@@ -95,7 +95,7 @@ function measure(width: number, height: number, start: (screen: BlessedScreen) =
     best = Math.min(best, (performance.now() - began) / FRAMES);
   }
   screen.destroy();
-  return { ms: best, bytes: bytes / (4 * FRAMES) };
+  return { ms: best, bytes: bytes / (2 * FRAMES) };
 }
 
 function scroll({ channels }: StandView): void {

@@ -13,7 +13,7 @@ describe.each([[80, 24], [120, 40], [200, 60]])('at %i x %i', (columns, rows) =>
     expect([...shown.tty.colours()].filter((colour) => !GREYS.has(colour))).toEqual([]);
     const [top] = shown.tty.lines();
     expect(top).toContain('coolant pump cell 2');
-    expect(top).toContain('all 6 channels in their bands');
+    expect(top).toContain('all 6 channels are in their bands');
     expect(top).toContain('09:41:30 UTC');
     for (const word of ['coolant-out', '82.52 °C', 'flow', 'L/min', 'motor-current', 'No alarm has been raised.', 'Nothing to do.', '30 readings/s'])
       expect(shown.tty.text()).toContain(word);

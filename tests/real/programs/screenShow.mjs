@@ -1,6 +1,6 @@
 // Shows an invented stand on the terminal it is given, from the built program, and says on standard error what the owner is told.
-// KILTER_DIST: the built program; SHOW: well (as it is left out), troubled, many; SHOW_BEAT: a file given the longest gap between beats.
-import { writeFileSync } from 'node:fs';
+// KILTER_DIST: the built program; SHOW_RATE: frames a second; SHOW_FAULT: throw or reject; SHOW: well (as it is left out), troubled, many; SHOW_BEAT: a file given the longest gap between beats.
+import { renameSync, writeFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { fileURLToPath, pathToFileURL } from 'node:url';
 
@@ -17,7 +17,9 @@ const pulse = setInterval(() => {
   const now = performance.now();
   gap = Math.max(gap, now - beat);
   beat = now;
-  if (process.env.SHOW_BEAT) writeFileSync(process.env.SHOW_BEAT, JSON.stringify({ gap, frames }));
+  if (!process.env.SHOW_BEAT) return;
+  writeFileSync(`${process.env.SHOW_BEAT}.new`, JSON.stringify({ gap, frames }));
+  renameSync(`${process.env.SHOW_BEAT}.new`, process.env.SHOW_BEAT); // whole at any moment
 }, 20);
 const turn = () => {
   frames++;
@@ -35,6 +37,7 @@ const end = (words, status) => {
 };
 const screen = openScreen({
   env: process.env,
+  ...(process.env.SHOW_RATE ? { rate: Number(process.env.SHOW_RATE) } : {}),
   view: turn,
   select: () => undefined,
   onQuit: () => end('quit', 0),

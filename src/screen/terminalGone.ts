@@ -1,0 +1,29 @@
+import type { BlessedScreen } from './blessed.js';
+
+/**
+ * While the screen is open, errors of writing to the terminal are its business: a terminal that has gone (EIO, EPIPE) must
+ * not throw through the owner, who still has alarms to write.
+ * @param onGone called at most once
+ * @returns gives the errors back to those who listened before; not after the terminal has gone, for late ones may follow
+ */
+export function watchTerminal(output: NodeJS.WritableStream, onGone: () => void): () => void {
+  const before = output.listeners('error') as ((error: unknown) => void)[];
+  let gone = false;
+  const absorb = (): void => {
+    if (gone) return;
+    gone = true;
+    onGone();
+  };
+  output.removeAllListeners('error');
+  output.on('error', absorb);
+  return () => {
+    if (gone) return;
+    output.off('error', absorb);
+    for (const listener of before) output.on('error', listener);
+  };
+}
+
+/** Nothing more is written by blessed, which would write its farewell to a terminal that has gone. */
+export function mute(screen: BlessedScreen): void {
+  screen.program._owrite = screen.program.write = () => true;
+}
