@@ -35,6 +35,7 @@ class MqttSource implements Source {
   private readonly redelivery: Redelivery | null;
   /** Marks what comes by this run's subscriptions (MQTT 5): an older stand may have left others in the session. */
   private readonly subscription: number;
+  private marks = false;
   private sink: Sink | null = null;
   private acknowledger: Acknowledger | null = null;
   private retry: NodeJS.Timeout | undefined;
@@ -70,7 +71,7 @@ class MqttSource implements Source {
       () => sink.durable(),
       () => this.cut(`What came from ${this.broker} could not be stored; it is to be sent again.`),
     );
-    client.on('connect', (packet) => this.subscribe(packet));
+    client.on('connect', (packet) => this.connected(packet));
     client.on('close', () => this.lost());
     client.on('error', (error) => this.failed(error));
     client.on('disconnect', ({ reasonCode = 0 }) => (this.trouble = goodbye(reasonCode, this.broker)));
@@ -94,30 +95,38 @@ class MqttSource implements Source {
     }
   }
 
-  private subscribe({ sessionPresent, properties }: IConnackPacket): void {
-    const { client, options, intake } = this;
+  private connected({ sessionPresent, properties }: IConnackPacket): void {
     if (!sessionPresent) this.redelivery?.forget();
-    const five = options.protocol === '5';
+    this.marks = this.options.protocol === '5' && properties?.subscriptionIdentifiersAvailable !== false;
+    this.subscribe(this.intake.filters);
+  }
+
+  private subscribe(filters: readonly string[]): void {
+    const { client, options } = this;
+    const { qos } = options;
     // Retained messages are wanted once; after a reconnection only where the broker has forgotten us (MQTT 5, 3.8.3.1).
-    const each = { qos: options.qos, ...(five && { nl: false, rap: false, rh: this.wasOpen ? 1 : 0 }) };
-    const filters = Object.fromEntries(intake.filters.map((filter) => [filter, each])) as ISubscriptionMap;
-    const marked = five && properties?.subscriptionIdentifiersAvailable !== false;
-    client.subscribe(filters, marked ? { qos: options.qos, properties: { subscriptionIdentifier: this.subscription } } : { qos: options.qos }, (error, _, packet) => {
-      if (!this.stopping && client.connected) this.subscribed(error, packet?.granted as number[] | undefined);
+    const each = { qos, ...(options.protocol === '5' && { nl: false, rap: false, rh: this.wasOpen ? 1 : 0 }) };
+    const map = Object.fromEntries(filters.map((filter) => [filter, each])) as ISubscriptionMap;
+    client.subscribe(map, this.marks ? { qos, properties: { subscriptionIdentifier: this.subscription } } : { qos }, (error, _, packet) => {
+      if (!this.stopping && client.connected) this.subscribed(filters, error, packet?.granted as number[] | undefined);
     });
   }
 
-  private subscribed(error: Error | null, granted: readonly number[] | undefined): void {
+  private subscribed(filters: readonly string[], error: Error | null, granted: readonly number[] = []): void {
     const { broker } = this;
-    const refused = this.intake.filters.filter((_, i) => (granted?.[i] ?? 0) >= REFUSED_FROM).map((topic) => `'${clean(topic, 80)}'`);
+    const refused = filters.filter((_, i) => (granted[i] ?? 0) >= REFUSED_FROM);
     if (error && refused.length === 0) {
       this.cut(`${broker} does not take the subscription: ${clean(error.message, 120)}.`);
       return;
     }
-    this.openSince = performance.now();
+    if (Number.isNaN(this.openSince)) this.openSince = performance.now();
     this.wasOpen = true;
     if (refused.length === 0) this.say('open', `Connected to ${broker}.`);
-    else this.say('open', `Connected to ${broker}, which refuses ${refused.slice(0, 5).join(', ')}${refused.length > 5 ? ' and more' : ''}: look at its access rules.`);
+    else {
+      const named = refused.slice(0, 5).map((topic) => `'${clean(topic, 80)}'`);
+      this.say('open', `Connected to ${broker}, which refuses ${named.join(', ')}${refused.length > 5 ? ' and more' : ''}: look at its access rules.`);
+      this.retry = setTimeout(() => this.subscribe(refused), this.options.retryTo); // they may be mended while it runs
+    }
   }
 
   private failed(error: Error): void {
@@ -170,7 +179,7 @@ class MqttSource implements Source {
 
   private deliver({ topic, payload: raw, retain, dup, qos, messageId, properties }: IPublishPacket, sink: Sink): void {
     const ids = properties?.subscriptionIdentifier;
-    if (ids !== undefined && ![ids].flat().includes(this.subscription)) return;
+    if (ids !== undefined && ids !== this.subscription && !(Array.isArray(ids) && ids.includes(this.subscription))) return;
     const payload = typeof raw === 'string' ? Buffer.from(raw) : raw;
     if (qos > 0 && messageId !== undefined && this.redelivery?.seen(messageId, dup, topic, payload)) sink.fault('repeated', topic);
     else this.intake.take(topic, payload, { retain, dup }, sink);

@@ -80,7 +80,7 @@ export function connectionTrouble(error: unknown, broker: string): string {
 function other(code: string | undefined, message: string, broker: string): string {
   if (code && /^ERR_SSL|^ERR_TLS|^EPROTO$/.test(code))
     return `TLS with ${broker} fails (${clean(code, 60)}): is it a TLS port, and do the certificates fit?`;
-  if (/connack timeout/i.test(message)) return `${broker} takes the connection, but does not answer: is it an MQTT broker?`;
+  if (/connack timeout/i.test(message)) return `${broker} has not answered in time: look at the network and the firewall, and whether it is an MQTT broker.`;
   if (/keepalive timeout/i.test(message)) return `${broker} does not answer any more.`;
   return `No connection to ${broker}: ${clean(message, 160)}`;
 }
