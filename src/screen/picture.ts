@@ -103,7 +103,10 @@ function drawHistogram(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: num
   if (shown === 0) return;
   const perRow = (axis.high - axis.low) / (rows - 1);
   // A bin narrower than a third of a sigma shows noise, not shape: rows are gathered into bins.
-  const gather = band ? Math.max(2, Math.min(rows, Math.round((band.sigma * 0.35) / perRow))) : 4;
+  const wanted = band ? Math.max(2, Math.min(rows, Math.round((band.sigma * 0.35) / perRow))) : 4;
+  // As many steps of the instrument in each bin, or bins would be full and empty in turn.
+  const step = (c.resolution ?? 0) / perRow;
+  const gather = step >= 1 && step < rows ? Math.round(step * Math.max(1, Math.round(wanted / step))) : wanted;
   const counts = new Float64Array(Math.ceil(rows / gather));
   for (let i = trendLength - shown; i < trendLength; i++) {
     const y = axis.y(trend[i]!);
