@@ -33,6 +33,10 @@ export class Alarms {
 
   constructor(private readonly spec: ChannelSpec) {}
 
+  get none(): boolean {
+    return this.standing.length === 0;
+  }
+
   /** A signal raises an alarm, or carries on the one that stands. @param grounds asked for only when it raises */
   signal(events: EngineEvent[], detector: Detector, side: Side | null, moment: Moment, grounds: () => Grounds): void {
     const { channel } = this.spec;

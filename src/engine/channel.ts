@@ -2,16 +2,16 @@ import type { ActiveAlarm } from './alarm.js';
 import { Alarms, type Grounds, type Moment } from './alarms.js';
 import type { Band } from './band.js';
 import { Baseline, predictionLimit } from './baseline.js';
-import { EvidenceRing } from './evidence.js';
+import { evidenceRoom, keepEvidence, layEvidence, listEvidence } from './evidence.js';
 import type { EngineEvent } from './events.js';
-import { Frozen } from './frozen.js';
-import { HAND_FIELDS, INDEX, TIME, VALUE, Z } from './hand.js';
-import { Histogram } from './histogram.js';
-import { Patterns, RULE_BIT } from './patterns.js';
-import { RollingWindow } from './rollingWindow.js';
-import { RULES, type Detector, type Side } from './rules.js';
+import { layFrozen, logChance, measureStep, repeat, repeats, smallestStep, TOO_MANY, UNLIKE } from './frozen.js';
+import { emptyHistogram, tally } from './histogram.js';
+import { findPatterns, layPatterns, RULE_BIT, sideOf } from './patterns.js';
+import { pushReading, RollingWindow } from './rollingWindow.js';
+import { RULES, type Detector, type Rule, type Side } from './rules.js';
 import { pack, unpack, type ChannelSnapshot } from './snapshot.js';
 import type { ChannelSpec } from './spec.js';
+import { CLOCK, INDEX, INTEGERS, LIMITS, READINGS, SILENCE, SUMS, TIME, VALUE, Z } from './state.js';
 import type { WindowStatistics } from './window.js';
 import { bandSentence } from './words.js';
 
@@ -22,53 +22,59 @@ const AT_VALUE = VALUE;
 const AT_Z = Z;
 const AT_TIME = TIME;
 const AT_INDEX = INDEX;
+// Doubles: newest time of any reading; first tick, for a channel of which nothing ever came.
+const LAST_TIME = CLOCK;
+const WATCH_BEGAN = CLOCK + 1;
+// Doubles: what may be reported, what the work may be, the band, the limit of `inconsistent`.
+const RANGE_LOW = LIMITS;
+const RANGE_HIGH = LIMITS + 1;
+const TOLERANCE_LOW = LIMITS + 2;
+const TOLERANCE_HIGH = LIMITS + 3;
+const CENTRE = LIMITS + 4;
+const SIGMA = LIMITS + 5;
+const PREDICTION = LIMITS + 6;
+// Integers: 1 while a silence has been signalled and no reading came since.
+const SILENT = SILENCE;
+// What a reading did, as one mask: the bits of the rules, and these above them.
 const INCONSISTENT = RULE_BIT.inconsistent;
-// Further places of the state, after those of the reading at hand.
-const LAST_TIME = HAND_FIELDS; // newest time of any reading
-const WATCH_BEGAN = HAND_FIELDS + 1; // first tick, for a channel of which nothing ever came
-const SILENT = HAND_FIELDS + 2; // 1 while a silence has been signalled and no reading came since
-// Places of the limits: numbers in an array need no look at their kind before they are used.
-const RANGE_LOW = 0;
-const RANGE_HIGH = 1;
-const TOLERANCE_LOW = 2;
-const TOLERANCE_HIGH = 3;
-const CENTRE = 4;
-const SIGMA = 5;
-const PREDICTION = 6;
+const FROZEN_BIT = 1 << RULES.length;
+const OUTSIDE_BIT = 2 << RULES.length;
 
 /**
  * One channel from reading to signal to alarm: a function of (state, reading) and (state, time) to (state, events).
  * Time is an input, in ms since the epoch. The same readings and ticks give the same events on every run.
  */
 export class Channel {
-  /** value, z, time and index of the reading at hand; then newest time, begin of the watch, whether silent */
-  private readonly state = Float64Array.of(NaN, NaN, NaN, -1, NaN, NaN, 0);
-  private readonly limits: Float64Array;
+  /** The doubles and the integers of the state: see state.ts. */
+  private readonly s: Float64Array;
+  private readonly c = new Int32Array(INTEGERS);
+  /** Readings since the band was established, by quarter sigmas: see `emptyHistogram`. */
+  readonly histogram = emptyHistogram();
   private readonly window: RollingWindow;
-  private readonly patterns: Patterns;
-  private readonly frozen: Frozen;
-  private readonly evidence: EvidenceRing;
   private readonly baseline: Baseline | null;
   private readonly standing: Alarms;
-  private readonly watchFrozen: boolean;
+  private readonly judgesRepeats: boolean;
+  private readonly judgesSteps: boolean;
   private bandInForce: Band | null = null;
-  /** Readings since the band was established, by quarter sigmas. */
-  readonly histogram: Histogram;
 
   constructor(readonly spec: ChannelSpec) {
-    const { band, k, range, tolerance } = spec;
-    const [rangeLow, rangeHigh] = range ?? [-Infinity, Infinity];
-    const [toleranceLow, toleranceHigh] = tolerance ?? [-Infinity, Infinity];
+    const { band, k, range, tolerance, sideRun } = spec;
+    const s = new Float64Array(READINGS + spec.window + evidenceRoom(sideRun));
+    const { c } = this;
+    this.s = s;
+    s.fill(NaN, 0, SUMS);
+    s[AT_INDEX] = -1;
+    [s[TOLERANCE_LOW], s[TOLERANCE_HIGH]] = tolerance ?? [-Infinity, Infinity];
     // Infinities measure nothing, whatever the range.
-    const [least, most] = [Math.max(rangeLow, -Number.MAX_VALUE), Math.min(rangeHigh, Number.MAX_VALUE)];
-    this.limits = Float64Array.of(least, most, toleranceLow, toleranceHigh, NaN, NaN, Infinity);
-    this.window = new RollingWindow(spec.window, this.state);
-    this.patterns = new Patterns(spec.rules, k, spec.sideRun, this.state);
-    this.frozen = new Frozen(spec.resolution, spec.frozenOdds, this.state);
-    this.evidence = new EvidenceRing(this.state, spec.sideRun);
-    this.histogram = new Histogram(this.state);
+    s[RANGE_LOW] = Math.max(range?.[0] ?? -Infinity, -Number.MAX_VALUE);
+    s[RANGE_HIGH] = Math.min(range?.[1] ?? Infinity, Number.MAX_VALUE);
+    s[PREDICTION] = Infinity;
+    layPatterns(s, c, spec.rules, k, sideRun);
+    layEvidence(c, READINGS + spec.window, sideRun);
+    this.window = new RollingWindow(spec.window, s, c);
     this.standing = new Alarms(spec);
-    this.watchFrozen = spec.frozen;
+    this.judgesRepeats = spec.frozen;
+    this.judgesSteps = spec.frozen && spec.resolution === null;
     if ('learn' in band) this.baseline = new Baseline(band.learn);
     else {
       this.baseline = null;
@@ -94,7 +100,7 @@ export class Channel {
     if (snapshot.spec !== JSON.stringify(spec)) throw new Error(`The snapshot of ${spec.channel} belongs to another specification.`);
     const channel = new Channel(spec);
     unpack(snapshot.arrays, channel.arrays());
-    if (snapshot.band) channel.establish(snapshot.band);
+    channel.bandInForce = snapshot.band;
     channel.standing.standing = snapshot.alarms.map((alarm) => ({ ...alarm }));
     return channel;
   }
@@ -115,26 +121,37 @@ export class Channel {
    * @param value in the channel's unit; NaN and infinities are off the scale
    */
   take(time: number, value: number): readonly EngineEvent[] {
-    const { state, limits } = this;
-    state[AT_INDEX]!++;
-    state[AT_VALUE] = value;
-    state[AT_TIME] = time;
-    const last = state[LAST_TIME]!;
-    if (time > last || last !== last) state[LAST_TIME] = time;
-    this.evidence.push();
-    if (!(value >= limits[RANGE_LOW]! && value <= limits[RANGE_HIGH]!)) return this.offScale(time, value);
-    this.window.push();
-    if (this.bandInForce === null) return this.settle(time, value);
+    const { s } = this;
+    s[AT_TIME] = time;
+    s[AT_VALUE] = value;
+    return this.judge(); // so short is `take` that it is inlined where it is called, and boxes neither number
+  }
 
-    const z = (value - limits[CENTRE]!) / limits[SIGMA]!;
-    state[AT_Z] = z;
-    this.histogram.add();
-    let fired = this.patterns.step();
-    if (Math.abs(z) > limits[PREDICTION]!) fired |= INCONSISTENT;
-    const frozen = this.watchFrozen && this.frozen.step();
-    const outside = value > limits[TOLERANCE_HIGH]! || value < limits[TOLERANCE_LOW]!;
-    if (fired === 0 && !frozen && !outside && this.standing.standing.length === 0) return NONE;
-    return this.report(time, value, z, fired, frozen, outside);
+  /** Judges the reading at hand. */
+  private judge(): readonly EngineEvent[] {
+    const { s, c } = this;
+    const time = s[AT_TIME]!;
+    const value = s[AT_VALUE]!;
+    const last = s[LAST_TIME]!;
+    s[AT_INDEX]!++;
+    if (time > last || last !== last) s[LAST_TIME] = time;
+    keepEvidence(s, c);
+    if (!(value >= s[RANGE_LOW]! && value <= s[RANGE_HIGH]!)) return this.offScale();
+    if (pushReading(s, c)) this.window.closeBlock();
+    if (this.bandInForce === null) return this.settle();
+
+    const z = (value - s[CENTRE]!) / s[SIGMA]!;
+    s[AT_Z] = z;
+    tally(s, this.histogram);
+    let found = findPatterns(s, c);
+    if (Math.abs(z) > s[PREDICTION]!) found |= INCONSISTENT;
+    if (this.judgesRepeats) {
+      const like = repeat(s, c);
+      if (like === TOO_MANY) found |= FROZEN_BIT;
+      else if (like === UNLIKE && this.judgesSteps) measureStep(s, c, s[SIGMA]!, this.spec.frozenOdds);
+    }
+    if (value > s[TOLERANCE_HIGH]! || value < s[TOLERANCE_LOW]!) found |= OUTSIDE_BIT;
+    return found === 0 && this.standing.none ? NONE : this.report(found);
   }
 
   /**
@@ -142,13 +159,13 @@ export class Channel {
    * @param time ms since the epoch, by the same clock as the readings
    */
   tick(time: number): readonly EngineEvent[] {
-    const { state } = this;
+    const { s, c } = this;
     const { silentAfter } = this.spec;
-    if (silentAfter === null || state[SILENT] === 1) return NONE;
-    if (Number.isNaN(state[WATCH_BEGAN])) state[WATCH_BEGAN] = time;
-    const since = this.lastTime ?? state[WATCH_BEGAN]!;
+    if (silentAfter === null || c[SILENT] === 1) return NONE;
+    if (Number.isNaN(s[WATCH_BEGAN])) s[WATCH_BEGAN] = time;
+    const since = this.lastTime ?? s[WATCH_BEGAN]!;
     if (!(time - since > silentAfter)) return NONE;
-    state[SILENT] = 1;
+    c[SILENT] = 1;
     const events: EngineEvent[] = [];
     const moment = { index: this.index, time, value: null, z: null, band: this.bandInForce };
     this.standing.signal(events, 'silent', null, moment, () => this.grounds({ silentAfter, silence: time - since }));
@@ -156,80 +173,82 @@ export class Channel {
   }
 
   /** A reading that measures nothing: it counts, but takes part in no statistics, as a missing reading takes part in none. */
-  private offScale(time: number, value: number): readonly EngineEvent[] {
-    const { state, limits, spec } = this;
-    state[AT_Z] = NaN;
-    state[SILENT] = 0;
+  private offScale(): readonly EngineEvent[] {
+    const { s, c, spec } = this;
+    s[AT_Z] = NaN;
+    c[SILENT] = 0;
     const events: EngineEvent[] = [];
-    const moment = this.moment(time, value, null);
-    const side = value > limits[RANGE_HIGH]! ? 'high' : value < limits[RANGE_LOW]! ? 'low' : null;
+    const moment = this.moment();
+    const value = s[AT_VALUE]!;
+    const side = value > s[RANGE_HIGH]! ? 'high' : value < s[RANGE_LOW]! ? 'low' : null;
     this.standing.signal(events, 'off-scale', side, moment, () => this.grounds(pair(spec.range)));
     this.standing.settle(events, moment, false);
     return events;
   }
 
-  private settle(time: number, value: number): readonly EngineEvent[] {
-    const { baseline, spec, limits } = this;
-    const outside = value > limits[TOLERANCE_HIGH]! || value < limits[TOLERANCE_LOW]!;
-    const events = outside || this.alarms.length > 0 ? this.report(time, value, null, 0, false, outside) : NONE;
+  private settle(): readonly EngineEvent[] {
+    const { s, baseline, spec, index } = this;
+    const value = s[AT_VALUE]!;
+    const outside = value > s[TOLERANCE_HIGH]! || value < s[TOLERANCE_LOW]!;
+    const events = outside || !this.standing.none ? this.report(outside ? OUTSIDE_BIT : 0) : NONE;
     if (baseline?.take(value) !== true) return events;
-    const { index } = this;
     const band = baseline.band(`learned@${index}`, spec.k, spec.resolution);
     baseline.restart();
     if (band) this.establish(band);
-    return [...events, { event: 'band', channel: spec.channel, index, time, band, sentence: bandSentence(spec, band) }];
+    return [...events, { event: 'band', channel: spec.channel, index, time: s[AT_TIME]!, band, sentence: bandSentence(spec, band) }];
   }
 
   private establish(band: Band): void {
-    const { limits } = this;
+    const { s, c, spec } = this;
     this.bandInForce = band;
-    limits[CENTRE] = band.centre;
-    limits[SIGMA] = band.sigma;
-    if (this.spec.rules.includes('inconsistent')) limits[PREDICTION] = predictionLimit(band);
-    this.frozen.judgeBy(band.sigma);
+    s[CENTRE] = band.centre;
+    s[SIGMA] = band.sigma;
+    if (spec.rules.includes('inconsistent')) s[PREDICTION] = predictionLimit(band);
+    layFrozen(s, c, band.sigma, spec.resolution, spec.frozenOdds);
   }
 
   /** The signals of a reading on the scale, and what they do to the alarms. Only readings that are not quiet come here. */
-  private report(time: number, value: number, z: number | null, fired: number, frozen: boolean, outside: boolean): readonly EngineEvent[] {
+  private report(found: number): readonly EngineEvent[] {
     const events: EngineEvent[] = [];
-    const { spec, standing, patterns, limits, state } = this;
-    const moment = this.moment(time, value, z);
+    const { spec, standing, s, c } = this;
+    const moment = this.moment();
     const signal = (detector: Detector, side: Side | null, grounds: () => Grounds): void =>
       standing.signal(events, detector, side, moment, grounds);
-    state[SILENT] = 0;
-    for (const rule of RULES)
-      if (fired & RULE_BIT[rule]) {
-        signal(rule, patterns.sideOf(rule), () =>
-          this.grounds(
-            rule === 'inconsistent'
-              ? { prediction: limits[PREDICTION]! }
-              : { scale: spec.k / 3, ...(rule === 'eight-one-side' && { sideRun: spec.sideRun }) },
-          ),
-        );
-      }
-    if (frozen) signal('frozen', null, () => this.frozenGrounds());
-    if (outside) signal('tolerance', value > limits[TOLERANCE_HIGH]! ? 'high' : 'low', () => this.grounds(pair(spec.tolerance)));
+    c[SILENT] = 0;
+    for (const rule of RULES) if (found & RULE_BIT[rule]) signal(rule, sideOf(rule, s, c), () => this.grounds(this.ruleLimits(rule)));
+    if (found & FROZEN_BIT) signal('frozen', null, () => this.frozenGrounds());
+    if (found & OUTSIDE_BIT)
+      signal('tolerance', s[AT_VALUE]! > s[TOLERANCE_HIGH]! ? 'high' : 'low', () => this.grounds(pair(spec.tolerance)));
     standing.settle(events, moment, true);
     return events;
   }
 
-  private moment(time: number, value: number, z: number | null): Moment {
-    return { index: this.index, time, value, z, band: this.bandInForce };
+  private moment(): Moment {
+    const { s, index, z } = this;
+    return { index, time: s[AT_TIME]!, value: s[AT_VALUE]!, z, band: this.bandInForce };
   }
 
   private grounds(limits: Readonly<Record<string, number>>, lnOdds: number | null = null): Grounds {
-    return { limits, readings: this.evidence.list(), lnOdds };
+    return { limits, readings: listEvidence(this.s, this.c), lnOdds };
+  }
+
+  private ruleLimits(rule: Rule): Record<string, number> {
+    if (rule === 'inconsistent') return { prediction: this.s[PREDICTION]! };
+    const scale = this.spec.k / 3;
+    return rule === 'eight-one-side' ? { scale, sideRun: this.spec.sideRun } : { scale };
   }
 
   private frozenGrounds(): Grounds {
-    const { repeats, logChance, smallestStep } = this.frozen;
-    const limits = { repeats, step: smallestStep ?? NaN, chance: Math.exp(logChance), odds: this.spec.frozenOdds };
-    return this.grounds(limits, repeats * logChance);
+    const { s, c, spec } = this;
+    const step = smallestStep(s, spec.resolution) ?? NaN;
+    const lnChance = logChance(step, s[SIGMA]!);
+    const times = repeats(c);
+    return this.grounds({ repeats: times, step, chance: Math.exp(lnChance), odds: spec.frozenOdds }, times * lnChance);
   }
 
   /** Index of the newest reading, counted from 0; -1 before the first. */
   get index(): number {
-    return this.state[INDEX]!;
+    return this.s[AT_INDEX]!;
   }
 
   /** The band in force; null while settling. */
@@ -244,17 +263,17 @@ export class Channel {
 
   /** Newest time of a reading, ms since the epoch; null before the first. */
   get lastTime(): number | null {
-    return finite(this.state[LAST_TIME]!);
+    return finite(this.s[LAST_TIME]!);
   }
 
   /** Newest value, NaN and infinities included; null before the first. */
   get value(): number | null {
-    return this.index < 0 ? null : this.state[VALUE]!;
+    return this.index < 0 ? null : this.s[AT_VALUE]!;
   }
 
   /** Deviation of the newest reading in sigmas of the band; null while settling or off the scale. */
   get z(): number | null {
-    return finite(this.state[Z]!);
+    return finite(this.s[AT_Z]!);
   }
 
   /** Standing alarms, oldest first. */
@@ -300,15 +319,7 @@ export class Channel {
   }
 
   private arrays(): Readonly<Record<string, Float64Array | Int32Array | Uint32Array>> {
-    return {
-      channel: this.state,
-      ...this.window.state(),
-      ...this.patterns.arrays(),
-      ...this.frozen.arrays(),
-      ...this.evidence.arrays(),
-      ...this.baseline?.arrays(),
-      histogram: this.histogram.counts,
-    };
+    return { doubles: this.s, integers: this.c, ...this.window.arrays(), ...this.baseline?.arrays(), histogram: this.histogram };
   }
 }
 

@@ -1,52 +1,47 @@
 import type { EvidenceReading } from './events.js';
-import { INDEX, TIME, VALUE } from './hand.js';
+import { EVIDENCE, INDEX, TIME, VALUE } from './state.js';
 
 const AT_TIME = TIME;
 const AT_VALUE = VALUE;
 const FEWEST = 32; // readings that evidence keeps at least
+// Integers: where the ring begins among the doubles, mask of its places, place of the newest reading.
+const START = EVIDENCE;
+const MASK = EVIDENCE + 1;
+const NEWEST = EVIDENCE + 2;
 
-/**
- * The newest readings of a channel as they came, with their times; those off the scale too. As many as the longest
- * pattern looks back, so that every verdict recomputes.
+/*
+ * Evidence: the newest readings of a channel as they came, with their times, those off the scale too. As many as the
+ * longest pattern looks back, so that every verdict recomputes. A ring of times and values by turns.
  */
-export class EvidenceRing {
-  /** time and value by turns */
-  private readonly ring: Float64Array;
-  /** place of the newest reading */
-  private readonly place = Int32Array.of(-2);
-  private readonly mask: number;
 
-  /** @param longest readings that the longest pattern spans */
-  constructor(
-    private readonly hand: Float64Array,
-    longest: number,
-  ) {
-    const kept = 2 ** Math.ceil(Math.log2(Math.max(FEWEST, longest))); // a place is then a mask and no division
-    this.ring = new Float64Array(2 * kept);
-    this.mask = 2 * kept - 1;
-  }
+/** Doubles that the ring takes. @param longest readings that the longest pattern spans */
+export function evidenceRoom(longest: number): number {
+  return 2 * 2 ** Math.ceil(Math.log2(Math.max(FEWEST, longest))); // a place is then a mask and no division
+}
 
-  /** Keeps the reading at hand. */
-  push(): void {
-    const { hand, ring, place } = this;
-    const at = (place[0]! + 2) & this.mask;
-    place[0] = at;
-    ring[at] = hand[AT_TIME]!;
-    ring[at + 1] = hand[AT_VALUE]!;
-  }
+/** Lays out the ring. @param start its first place among the doubles */
+export function layEvidence(c: Int32Array, start: number, longest: number): void {
+  c[START] = start;
+  c[MASK] = evidenceRoom(longest) - 1;
+  c[NEWEST] = -2;
+}
 
-  /** The newest readings, oldest first. */
-  list(): EvidenceReading[] {
-    const { ring, mask, place, hand } = this;
-    const newest = hand[INDEX]!;
-    const held = Math.min(newest + 1, ring.length / 2);
-    return Array.from({ length: held }, (_, i) => {
-      const at = (place[0]! - 2 * (held - 1 - i)) & mask;
-      return { index: newest - (held - 1 - i), time: ring[at]!, value: ring[at + 1]! };
-    });
-  }
+/** Keeps the reading at hand. */
+export function keepEvidence(s: Float64Array, c: Int32Array): void {
+  const newest = (c[NEWEST]! + 2) & c[MASK]!;
+  const place = c[START]! + newest;
+  c[NEWEST] = newest;
+  s[place] = s[AT_TIME]!;
+  s[place + 1] = s[AT_VALUE]!;
+}
 
-  arrays(): Readonly<Record<string, Float64Array | Int32Array>> {
-    return { evidence: this.ring, evidencePlace: this.place };
-  }
+/** The newest readings, oldest first. */
+export function listEvidence(s: Float64Array, c: Int32Array): EvidenceReading[] {
+  const mask = c[MASK]!;
+  const held = Math.min(s[INDEX]! + 1, (mask + 1) / 2);
+  return Array.from({ length: held }, (_, i) => {
+    const age = held - 1 - i;
+    const place = c[START]! + ((c[NEWEST]! - 2 * age) & mask);
+    return { index: s[INDEX]! - age, time: s[place]!, value: s[place + 1]! };
+  });
 }

@@ -1,82 +1,78 @@
 import { between, upperTail } from '../stats/normal.js';
-import { VALUE } from './hand.js';
+import { FROZEN, REPEATS, VALUE } from './state.js';
 
 const AT_VALUE = VALUE;
+// Doubles: last value; least step seen between unlike readings; steps seen.
+const LAST = FROZEN;
+const LEAST = FROZEN + 1;
+const SEEN = FROZEN + 2;
+const STEP = FROZEN + 3; // from the value before to the last unlike one
+// Integers: repeats of the last value; repeats at which they are no longer credible.
+const REPEATED = REPEATS;
+const NEEDED = REPEATS + 1;
+
 const FEWEST = 4; // repeats that are never too few to be chance
 const STEPS = 20; // steps between unlike readings after which the least of them stands for the resolution
+const MOST = 2 ** 30; // repeats that are counted
+const NEVER = 2 ** 31 - 1;
 
-/**
+/*
  * Finds a value that has repeated longer than noise and resolution make credible. A reading of the band falls on the same
  * rounded value as the one before with probability at most p = 2 Phi(r / 2 sigma) - 1, the share of the most likely value
- * when the instrument rounds to steps of r; m repeats in a row have at most p^m.
+ * when the instrument rounds to steps of r; m repeats in a row have at most p^m. A resolution that is not given is judged
+ * from the readings: the least step between unlike ones, once 20 steps were seen. It can only be too large, which errs
+ * towards silence.
  */
-export class Frozen {
-  /** last value, repeats of it, least step seen, steps seen, repeats at which it is no longer credible */
-  private readonly state = Float64Array.of(NaN, 0, Infinity, 0, Infinity);
-  private sigma = 0;
 
-  /**
-   * @param resolution of the instrument; null: the least step between readings stands for it, once 20 steps were seen
-   * @param odds below which a run of repeats counts as frozen
-   */
-  constructor(
-    private readonly resolution: number | null,
-    private readonly odds: number,
-    private readonly hand: Float64Array,
-  ) {}
+/** Begins to judge by a band. @param resolution null: judged from the readings; @param odds below which repeats count as frozen */
+export function layFrozen(s: Float64Array, c: Int32Array, sigma: number, resolution: number | null, odds: number): void {
+  s[LAST] = NaN;
+  s[LEAST] = Infinity;
+  s[SEEN] = 0;
+  s[STEP] = NaN;
+  c[REPEATED] = 0;
+  c[NEEDED] = resolution === null ? NEVER : repeatsNeeded(logChance(resolution, sigma), odds);
+}
 
-  /** To be called when the band is known. */
-  judgeBy(sigma: number): void {
-    this.sigma = sigma;
-    this.reckon();
+/** What `repeat` finds: an unlike reading, a credible repeat, or one repeat too many. */
+export const UNLIKE = 0;
+export const CREDIBLE = 1;
+export const TOO_MANY = 2;
+
+/** Takes the reading at hand. */
+export function repeat(s: Float64Array, c: Int32Array): number {
+  const value = s[AT_VALUE]!;
+  const last = s[LAST]!;
+  if (value !== last) {
+    s[STEP] = value - last;
+    s[LAST] = value;
+    c[REPEATED] = 0;
+    return 0;
   }
+  const repeats = c[REPEATED]! + 1;
+  if (repeats <= MOST) c[REPEATED] = repeats;
+  return repeats >= c[NEEDED]! ? 2 : 1;
+}
 
-  /** Takes the reading at hand. @returns whether its value counts as frozen */
-  step(): boolean {
-    const { state: s } = this;
-    const value = this.hand[AT_VALUE]!;
-    const last = s[0]!;
-    if (value === last) return ++s[1]! >= s[4]!;
-    s[0] = value;
-    s[1] = 0;
-    if (this.resolution === null) this.measure(value > last ? value - last : last - value);
-    return false;
-  }
+/** Where the resolution is not known: takes the step to an unlike reading into the guess at it. */
+export function measureStep(s: Float64Array, c: Int32Array, sigma: number, odds: number): void {
+  const size = Math.abs(s[STEP]!);
+  if (!(size > 0)) return; // the first reading has no step
+  s[SEEN]!++;
+  if (size < s[LEAST]!) s[LEAST] = size;
+  else if (s[SEEN] !== STEPS) return;
+  const known = smallestStep(s, null);
+  if (known !== null) c[NEEDED] = repeatsNeeded(logChance(known, sigma), odds);
+}
 
-  /** Takes a step between unlike readings into the guess at the resolution. */
-  private measure(step: number): void {
-    const { state: s } = this;
-    if (!(step > 0)) return; // the first reading has none before it
-    s[3]!++;
-    if (step < s[2]!) s[2] = step;
-    else if (s[3] !== STEPS) return;
-    this.reckon();
-  }
+/** How often the last value has repeated. */
+export function repeats(c: Int32Array): number {
+  return c[REPEATED]!;
+}
 
-  get repeats(): number {
-    return this.state[1]!;
-  }
-
-  /** The step by which repeats are judged; null while it is not known. */
-  get smallestStep(): number | null {
-    if (this.resolution !== null) return this.resolution;
-    return this.state[3]! >= STEPS ? this.state[2]! : null;
-  }
-
-  /** Natural logarithm of the probability of one repeat; NaN while nothing can be said. */
-  get logChance(): number {
-    const step = this.smallestStep;
-    if (step === null || !(this.sigma > 0)) return NaN;
-    return logChance(step, this.sigma);
-  }
-
-  private reckon(): void {
-    this.state[4] = repeatsNeeded(this.logChance, this.odds);
-  }
-
-  arrays(): Readonly<Record<string, Float64Array>> {
-    return { frozen: this.state };
-  }
+/** The step by which repeats are judged; null while it is not known. */
+export function smallestStep(s: Float64Array, resolution: number | null): number | null {
+  return resolution ?? (s[SEEN]! >= STEPS ? s[LEAST]! : null);
 }
 
 /** ln(2 Phi(r / 2 sigma) - 1), without cancellation where that probability is near 0 or near 1. */
@@ -85,8 +81,8 @@ export function logChance(resolution: number, sigma: number): number {
   return half < 1 ? Math.log(between(-half, half)) : Math.log1p(-2 * upperTail(half));
 }
 
-/** Repeats m, at least 4, at which p^m falls below the odds; infinite while p is not known, or where every reading repeats. */
+/** Repeats m, at least 4, at which p^m falls below the odds; beyond all counting where every reading repeats. */
 export function repeatsNeeded(lnChance: number, odds: number): number {
-  if (!(lnChance < 0)) return Infinity;
-  return Math.max(FEWEST, Math.floor(Math.log(odds) / lnChance) + 1);
+  if (!(lnChance < 0)) return NEVER;
+  return Math.max(FEWEST, Math.min(NEVER, Math.floor(Math.log(odds) / lnChance) + 1));
 }

@@ -1,22 +1,23 @@
-import { Z } from './hand.js';
+import { Z } from './state.js';
 
 const AT_Z = Z;
 const PER_SIGMA = 4;
 const REACH = 6;
 const BINS = 2 * REACH * PER_SIGMA;
+const FULL = 0xffffffff;
 
-/** Readings counted by their deviation in quarter sigmas of the band, from -6 to 6, with a bin below and one above. */
-export class Histogram {
-  /** counts[0] lies below -6 sigma, counts[1] from -6 to -5.75 ..., the last above 6. A full count stays full. */
-  readonly counts = new Uint32Array(BINS + 2);
+/**
+ * Bins for readings by their deviation in quarter sigmas of the band: bin 0 lies below -6 sigma, bin 1 from -6 to -5.75
+ * and so on, the last above 6.
+ */
+export function emptyHistogram(): Uint32Array {
+  return new Uint32Array(BINS + 2);
+}
 
-  constructor(private readonly hand: Float64Array) {}
-
-  /** Counts the reading at hand. */
-  add(): void {
-    const z = this.hand[AT_Z]!;
-    const at = z >= REACH ? BINS + 1 : z < -REACH ? 0 : ((z + REACH) * PER_SIGMA + 1) | 0;
-    const count = this.counts[at]!;
-    if (count < 0xffffffff) this.counts[at] = count + 1;
-  }
+/** Counts the reading at hand. A full count stays full. */
+export function tally(s: Float64Array, counts: Uint32Array): void {
+  const z = s[AT_Z]!;
+  const bin = z >= REACH ? BINS + 1 : z < -REACH ? 0 : ((z + REACH) * PER_SIGMA + 1) | 0;
+  const count = counts[bin]!;
+  if (count < FULL) counts[bin] = count + 1;
 }

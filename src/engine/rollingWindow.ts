@@ -1,5 +1,5 @@
 import { mad, middle } from '../stats/quickselect.js';
-import { VALUE } from './hand.js';
+import { INTEGERS, PLACES, READINGS, SUMS, VALUE } from './state.js';
 import type { WindowStatistics } from './window.js';
 
 /*
@@ -13,9 +13,37 @@ import type { WindowStatistics } from './window.js';
  * Fresh and rest sum deviations from one anchor, a reading that stays in the window as long as the block is written. With
  * a summed reading as anchor, S2 - S1^2 / n loses at most a factor n of the last place. What is kept beyond that time, the
  * aggregate of a whole block, is taken about the block's own mean.
+ *
+ * The first block has one place: it is closed by its first reading, so that the very first one needs no anchor.
  */
 
 const AT_VALUE = VALUE;
+const RING = READINGS;
+// Doubles: sums of the fresh readings; their anchor; readings held, n, and 1 / n(n - 1).
+const S1 = SUMS; // of deviations from the anchor
+const S2 = SUMS + 1; // of their squares
+const S = SUMS + 2; // of the readings themselves
+const LOST = SUMS + 3; // what S lost in rounding
+const LEAST = SUMS + 4;
+const MOST = SUMS + 5;
+const ABOUT = SUMS + 6;
+const COUNT = SUMS + 7;
+const SCALE = SUMS + 8;
+// A record of the rest: the same sums.
+const R_S1 = 0;
+const R_S2 = 1;
+const R_S = 2;
+const R_LOST = 3;
+const R_LEAST = 4;
+const R_MOST = 5;
+const R_FIELDS = 6;
+// Integers: where the next reading goes, its record of the rest, where the block began and where it ends, its number, 1 once the ring is full.
+const NEXT = PLACES;
+const RECORD = PLACES + 1;
+const FIRST = PLACES + 2;
+const AFTER = PLACES + 3;
+const BLOCK = PLACES + 4;
+const FULL = PLACES + 5;
 // An aggregate of whole blocks, in doubles. Mean = anchor + offset; the sum is kept to twice the digits of a double.
 const N = 0;
 const ANCHOR = 1;
@@ -26,152 +54,140 @@ const CARRY = 5;
 const MIN = 6;
 const MAX = 7;
 const FIELDS = 8;
-// A record of sums: of the fresh readings (with their anchor behind it), or of the rest.
-const S1 = 0; // of deviations from the anchor
-const S2 = 1; // of their squares
-const S = 2; // of the readings themselves
-const LOST = 3; // what S lost in rounding
-const LEAST = 4;
-const MOST = 5;
-const SUMS = 6;
-const ABOUT = SUMS;
-// Places: where the next reading goes, its record of the rest, where the block began and where it ends, its number, 1 once the ring is full.
-const NEXT = 0;
-const RECORD = 1;
-const FIRST = 2;
-const AFTER = 3;
-const BLOCK = 4;
-const FULL = 5;
-const PLACES = 6;
 
 let scratch = new Float64Array(512); // for order statistics; shared, since they are asked for one at a time
 
+/** Takes the finite reading at hand into the window. @returns whether its block is full: then `closeBlock` is to be called */
+export function pushReading(s: Float64Array, c: Int32Array): boolean {
+  const x = s[AT_VALUE]!;
+  const at = c[NEXT]!;
+  const next = at + 1;
+  if (c[FULL] === 0) {
+    s[COUNT] = next;
+    s[SCALE] = 1 / (next * at);
+  }
+  s[RING + at] = x;
+  const d = x - s[ABOUT]!;
+  s[S1]! += d;
+  s[S2]! += d * d;
+  const sum = s[S]!;
+  const total = sum + x;
+  const part = total - sum;
+  s[S] = total;
+  s[LOST]! += sum - (total - part) + (x - part); // two-sum; Knuth, The Art of Computer Programming 2, 4.2.2
+  if (x < s[LEAST]!) s[LEAST] = x;
+  if (x > s[MOST]!) s[MOST] = x;
+  c[RECORD]! += R_FIELDS;
+  c[NEXT] = next;
+  return next === c[AFTER];
+}
+
 /**
- * Statistics of the newest `size` readings. Pushing and asking cost the same at every reading and allocate nothing.
+ * Statistics of the newest `size` readings. Taking one and asking cost the same at every reading and allocate nothing.
  * Blocks are joined after Chan, Golub and LeVeque, The American Statistician 37(3), 1983; sums are compensated. Readings
  * may be anything whose square is finite (below 1e154): one beyond that leaves sd NaN or infinite while it is in the window.
  */
 export class RollingWindow {
-  private readonly values: Float64Array;
   private readonly blocks: Float64Array;
   private readonly rest: Float64Array;
-  private readonly fresh = new Float64Array(SUMS + 1);
   private readonly back = new Float64Array(FIELDS);
   private readonly middle = new Float64Array(FIELDS);
-  private readonly place = new Int32Array(PLACES);
   private readonly blockSize: number;
 
   /**
    * @param size readings in the window, at least 2
-   * @param hand the reading at hand, whose value `push` takes
+   * @param s doubles of the channel: those of the window begin at READINGS
+   * @param c integers of the channel
    */
   constructor(
     readonly size: number,
-    private readonly hand: Float64Array,
+    private readonly s: Float64Array = new Float64Array(READINGS + size),
+    private readonly c: Int32Array = new Int32Array(INTEGERS),
   ) {
-    this.blockSize = Math.min(Math.round(1.4 * Math.sqrt(size)), size - 1); // the newest reading before a block outlasts it
-    this.values = new Float64Array(size);
-    this.blocks = new Float64Array(Math.ceil(size / this.blockSize) * FIELDS);
-    this.rest = new Float64Array(this.blockSize * SUMS);
-    for (let record = 0; record < this.rest.length; record += SUMS) {
-      this.rest[record + LEAST] = Infinity;
-      this.rest[record + MOST] = -Infinity;
-    }
-    this.fresh[LEAST] = Infinity;
-    this.fresh[MOST] = -Infinity;
-    this.place[AFTER] = this.blockSize;
+    this.blockSize = Math.max(1, Math.min(Math.round(1.2 * Math.sqrt(size)), size - 3));
+    this.blocks = new Float64Array((1 + Math.ceil((size - 1) / this.blockSize)) * FIELDS);
+    this.rest = new Float64Array(this.blockSize * R_FIELDS);
+    s[LEAST] = Infinity;
+    s[MOST] = -Infinity;
+    s[SCALE] = NaN;
+    this.rest[R_LEAST] = Infinity;
+    this.rest[R_MOST] = -Infinity;
+    c[AFTER] = 1;
   }
 
   get length(): number {
-    return this.place[FULL] === 1 ? this.size : this.place[NEXT]!;
+    return this.s[COUNT]!;
   }
 
-  /** Takes the finite reading in hand. */
-  push(): void {
-    const { place, fresh } = this;
-    const x = this.hand[AT_VALUE]!;
-    const at = place[NEXT]!;
-    if (at === 0 && place[FULL] === 0) fresh[ABOUT] = x;
-    this.values[at] = x;
-    const d = x - fresh[ABOUT]!;
-    fresh[S1]! += d;
-    fresh[S2]! += d * d;
-    const sum = fresh[S]!;
-    const total = sum + x;
-    const part = total - sum;
-    fresh[S] = total;
-    fresh[LOST]! += sum - (total - part) + (x - part); // two-sum; Knuth, The Art of Computer Programming 2, 4.2.2
-    if (x < fresh[LEAST]!) fresh[LEAST] = x;
-    if (x > fresh[MOST]!) fresh[MOST] = x;
-    place[RECORD]! += SUMS;
-    place[NEXT] = at + 1;
-    if (at + 1 === place[AFTER]) this.closeBlock();
+  /** Takes a finite reading. */
+  take(x: number): void {
+    this.s[AT_VALUE] = x;
+    if (pushReading(this.s, this.c)) this.closeBlock();
   }
 
   /** Mean; NaN before the first reading. */
   mean(): number {
-    const { fresh, rest } = this;
-    const record = this.place[RECORD]!;
-    const a = fresh[S]!;
-    const b = rest[record + S]!;
+    const { s, rest } = this;
+    const record = this.c[RECORD]!;
+    const a = s[S]!;
+    const b = rest[record + R_S]!;
     const total = a + b;
     const part = total - a;
-    const lost = a - (total - part) + (b - part) + fresh[LOST]! + rest[record + LOST]!;
-    return (total + lost) / this.length;
+    return (total + (a - (total - part) + (b - part) + (s[LOST]! + rest[record + R_LOST]!))) / s[COUNT]!;
   }
 
   /** Sample standard deviation (n - 1); NaN for fewer than two readings. */
   sd(): number {
-    const { fresh, rest } = this;
-    const record = this.place[RECORD]!;
-    const n = this.length;
-    const s1 = fresh[S1]! + rest[record + S1]!;
-    const s2 = fresh[S2]! + rest[record + S2]!;
-    return Math.sqrt(Math.max(0, n * s2 - s1 * s1) / (n * (n - 1)));
+    const { s, rest } = this;
+    const record = this.c[RECORD]!;
+    const s1 = s[S1]! + rest[record + R_S1]!;
+    const s2 = s[S2]! + rest[record + R_S2]!;
+    return Math.sqrt(Math.max(0, s[COUNT]! * s2 - s1 * s1) * s[SCALE]!);
   }
 
   min(): number {
-    return this.length === 0 ? NaN : Math.min(this.fresh[LEAST]!, this.rest[this.place[RECORD]! + LEAST]!);
+    return this.length === 0 ? NaN : Math.min(this.s[LEAST]!, this.rest[this.c[RECORD]! + R_LEAST]!);
   }
 
   max(): number {
-    return this.length === 0 ? NaN : Math.max(this.fresh[MOST]!, this.rest[this.place[RECORD]! + MOST]!);
+    return this.length === 0 ? NaN : Math.max(this.s[MOST]!, this.rest[this.c[RECORD]! + R_MOST]!);
   }
 
-  private closeBlock(): void {
-    const { place, blocks, back, size } = this;
-    const base = place[BLOCK]! * FIELDS;
+  /** Puts the block just written away and opens the next one. To be called when `pushReading` says so. */
+  closeBlock(): void {
+    const { c, blocks, back, size } = this;
+    const base = c[BLOCK]! * FIELDS;
     this.summarise(base);
-    if (place[AFTER]! < size) {
+    if (c[AFTER]! < size) {
       join(back, 0, blocks, base);
-      place[BLOCK]!++;
+      c[BLOCK]!++;
     } else {
       // A lap is done: each of its blocks takes in all that follow it, for the middles of the next lap.
       for (let b = blocks.length - 2 * FIELDS; b >= 0; b -= FIELDS) join(blocks, b, blocks, b + FIELDS);
       back[N] = 0;
-      place[BLOCK] = 0;
-      place[NEXT] = 0;
-      place[FULL] = 1;
+      c[BLOCK] = 0;
+      c[NEXT] = 0;
+      c[FULL] = 1;
     }
-    place[FIRST] = place[NEXT]!;
-    place[AFTER] = Math.min(place[NEXT]! + this.blockSize, size);
-    place[RECORD] = 0;
+    c[FIRST] = c[NEXT]!;
+    c[AFTER] = c[BLOCK] === 0 ? 1 : Math.min(c[NEXT]! + this.blockSize, size);
+    c[RECORD] = 0;
     this.openBlock();
   }
 
   /** The aggregate of the block just written. */
   private summarise(base: number): void {
-    const { place, fresh, blocks, values } = this;
-    const first = place[FIRST]!;
-    const after = place[AFTER]!;
+    const { s, c, blocks } = this;
+    const first = RING + c[FIRST]!;
+    const after = RING + c[AFTER]!;
     const n = after - first;
-    const anchor = fresh[S]! / n;
+    const anchor = s[S]! / n;
     let s1 = 0;
     let s2 = 0;
     let least = Infinity;
     let most = -Infinity;
     for (let i = first; i < after; i++) {
-      const x = values[i]!;
+      const x = s[i]!;
       const d = x - anchor;
       s1 += d;
       s2 += d * d;
@@ -182,32 +198,32 @@ export class RollingWindow {
     blocks[base + ANCHOR] = anchor;
     blocks[base + OFFSET] = s1 / n;
     blocks[base + M2] = Math.max(0, s2 - (s1 * s1) / n);
-    blocks[base + SUM] = fresh[S]!;
-    blocks[base + CARRY] = fresh[LOST]!;
+    blocks[base + SUM] = s[S]!;
+    blocks[base + CARRY] = s[LOST]!;
     blocks[base + MIN] = least;
     blocks[base + MAX] = most;
   }
 
   /** A reading that outlasts the block about to be written: the middle one of the newest three, so that it is no lone outlier. */
   private anchor(): number {
-    const { values, size, blockSize } = this;
-    const last = this.place[FIRST]! + size - 1;
-    const a = values[last % size]!;
-    if (this.length < 3 || size - blockSize < 3) return a;
-    const b = values[(last - 1) % size]!;
-    const c = values[(last - 2) % size]!;
+    const { s, size } = this;
+    const last = this.c[FIRST]! + size - 1;
+    const a = s[RING + (last % size)]!;
+    if (this.length < 3 || size < 4) return a;
+    const b = s[RING + ((last - 1) % size)]!;
+    const c = s[RING + ((last - 2) % size)]!;
     return Math.max(Math.min(a, b), Math.min(Math.max(a, b), c));
   }
 
   /** Makes `rest` for the block that is about to be written, while its old readings still stand. */
   private openBlock(): void {
-    const { values, fresh, rest, place, middle, back, blocks } = this;
-    const first = place[FIRST]!;
-    const after = place[AFTER]!;
-    const full = place[FULL] === 1;
+    const { s, c, rest, middle, back, blocks } = this;
+    const first = RING + c[FIRST]!;
+    const after = RING + c[AFTER]!;
+    const full = c[FULL] === 1;
     const anchor = this.anchor();
     middle[N] = 0;
-    const next = (place[BLOCK]! + 1) * FIELDS;
+    const next = (c[BLOCK]! + 1) * FIELDS;
     if (full && next < blocks.length) join(middle, 0, blocks, next);
     if (back[N]! > 0) join(middle, 0, back, 0);
     const n = middle[N]; // never 0: a block is shorter than the window
@@ -218,17 +234,17 @@ export class RollingWindow {
     let lost = middle[CARRY]!;
     let least = middle[MIN]!;
     let most = middle[MAX]!;
-    fresh[S1] = 0;
-    fresh[S2] = 0;
-    fresh[S] = 0;
-    fresh[LOST] = 0;
-    fresh[LEAST] = least; // the middle stays in the window as long as the block is written: few readings pass its extremes
-    fresh[MOST] = most;
-    fresh[ABOUT] = anchor;
+    s[S1] = 0;
+    s[S2] = 0;
+    s[S] = 0;
+    s[LOST] = 0;
+    s[LEAST] = least; // the middle stays in the window as long as the block is written: few readings pass its extremes
+    s[MOST] = most;
+    s[ABOUT] = anchor;
     // In the first lap there is no old block: then every record is the middle.
     for (let i = after - 1; i >= first; i--) {
       if (full) {
-        const x = values[i]!;
+        const x = s[i]!;
         const d = x - anchor;
         s1 += d;
         s2 += d * d;
@@ -238,24 +254,25 @@ export class RollingWindow {
         if (x < least) least = x;
         if (x > most) most = x;
       }
-      const record = (i - first) * SUMS;
-      rest[record + S1] = s1;
-      rest[record + S2] = s2;
-      rest[record + S] = sum;
-      rest[record + LOST] = lost;
-      rest[record + LEAST] = least;
-      rest[record + MOST] = most;
+      const record = (i - first) * R_FIELDS;
+      rest[record + R_S1] = s1;
+      rest[record + R_S2] = s2;
+      rest[record + R_S] = sum;
+      rest[record + R_LOST] = lost;
+      rest[record + R_LEAST] = least;
+      rest[record + R_MOST] = most;
     }
   }
 
   /** Copies the newest `min(length, out.length)` readings, oldest first. @returns how many */
   copy(out: Float64Array): number {
-    const { values, place, size } = this;
+    const { s, size } = this;
+    const ring = s.subarray(RING, RING + size);
     const n = Math.min(this.length, out.length);
-    const from = (place[NEXT]! - n + size) % size;
+    const from = (this.c[NEXT]! - n + size) % size;
     const head = Math.min(n, size - from);
-    out.set(values.subarray(from, from + head));
-    out.set(values.subarray(0, n - head), head);
+    out.set(ring.subarray(from, from + head));
+    out.set(ring.subarray(0, n - head), head);
     return n;
   }
 
@@ -298,10 +315,9 @@ export class RollingWindow {
     return squares > 0 ? products / squares : NaN;
   }
 
-  /** Every array of the state, for snapshots; writing them back restores it. */
-  state(): Readonly<Record<string, Float64Array | Int32Array>> {
-    const { values, blocks, rest, fresh, back, place } = this;
-    return { values, blocks, rest, fresh, back, place };
+  /** The arrays of the window alone, for snapshots; with those of the channel written back they restore it. */
+  arrays(): Readonly<Record<string, Float64Array>> {
+    return { blocks: this.blocks, rest: this.rest, back: this.back };
   }
 }
 

@@ -127,14 +127,12 @@ function feed(channel: Channel, x: Float64Array, n: number): void {
 
 /** Relative error of the window's sd after 1e8 readings at offset 1e9 and sd 1e-3. */
 function drift(): BenchRow {
-  const hand = new Float64Array(1);
-  const window = new RollingWindow(WINDOW, hand);
+  const window = new RollingWindow(WINDOW);
   const x = noise(1 << 16);
   const shifted = x.map((v) => 1e9 + (v - 41.2) / 310);
   const n = 100_000_000;
   for (let i = 0; i < n; i++) {
-    hand[0] = shifted[i & 0xffff]!;
-    window.push();
+    window.take(shifted[i & 0xffff]!);
   }
   const newest = Array.from({ length: WINDOW }, (_, i) => shifted[(n - WINDOW + i) & 0xffff]! - 1e9); // exact differences
   const error = Math.abs(window.sd() / sampleStandardDeviation(newest) - 1);
