@@ -11,6 +11,7 @@ interface Program {
   setMouse(modes: Record<string, boolean>, on: boolean): void;
   enableMouse(): void;
   write(text: string): boolean;
+  flush(): void;
   /** The same, by the name under which blessed's own buffer calls it. */
   _owrite(text: string): boolean;
 }
