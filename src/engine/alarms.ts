@@ -85,8 +85,8 @@ export class Alarms {
     const { k, clearAfter } = this.spec;
     const within = moment.z === null || Math.abs(moment.z) <= k;
     for (const alarm of [...this.standing]) {
-      if (alarm.calm < 0) alarm.calm = 0; // signalled at this very reading
-      else if (alarm.detector === 'silent') this.clear(events, alarm, moment); // the channel speaks
+      if (alarm.detector === 'silent') this.clear(events, alarm, moment); // the channel speaks
+      else if (alarm.calm < 0) alarm.calm = 0; // signalled at this very reading
       else if (!onScale || !(within || alarm.detector === 'tolerance' || alarm.detector === 'off-scale')) alarm.calm = 0;
       else if (++alarm.calm >= clearAfter) this.clear(events, alarm, moment);
     }
