@@ -5,6 +5,7 @@ import { clean } from '../../src/text/clean.js';
 import { UserError } from '../../src/text/errors.js';
 
 const CHUNK = 1 << 20;
+const PACKED = 1 << 14;
 
 /** A recording's bytes in chunks, unpacked where they are gzip, and how far the file has been read. */
 export interface RecordingBytes {
@@ -31,20 +32,45 @@ export async function recordingBytes(path: string): Promise<RecordingBytes> {
   let torn: string | null = null;
   file.on('data', (chunk) => (read += chunk.length));
   async function* chunks(): AsyncGenerator<Buffer> {
-    const stream = gzip ? file.pipe(createGunzip({ chunkSize: CHUNK })) : file;
-    if (gzip) file.once('error', (error) => stream.destroy(error));
     try {
-      for await (const chunk of stream) yield chunk as Buffer;
-    } catch (error) {
-      const { code, message } = error as NodeJS.ErrnoException;
-      if (code === 'Z_BUF_ERROR') torn = `${name} stops in the middle: what was whole has been read.`;
-      else if (code?.startsWith('Z_')) torn = `${name} is damaged from some place on (${clean(message, 60)}): what came before has been read.`;
-      else throw error;
+      if (!gzip) for await (const chunk of file) yield chunk as Buffer;
+      else {
+        const failure = yield* unpacked(file);
+        if (failure?.code === 'Z_BUF_ERROR') torn = `${name} stops in the middle: what was whole has been read.`;
+        else if (failure) torn = `${name} is damaged from some place on (${clean(failure.message, 60)}): what came before has been read.`;
+      }
     } finally {
       file.destroy();
     }
   }
   return { chunks: chunks(), fraction: () => Math.min(1, read / size), torn: () => torn };
+}
+
+/**
+ * Everything that a gzip file holds, up to where it is damaged. The packed bytes are handed over in small pieces, since
+ * each may become a thousand times as much.
+ * @returns what was wrong, or null
+ */
+async function* unpacked(file: AsyncIterable<Buffer>): AsyncGenerator<Buffer, NodeJS.ErrnoException | null> {
+  const gunzip = createGunzip({ chunkSize: CHUNK });
+  const ready: Buffer[] = [];
+  let failure: NodeJS.ErrnoException | null = null;
+  gunzip.on('data', (chunk: Buffer) => ready.push(chunk));
+  gunzip.on('error', (error) => (failure = error));
+  const over = new Promise<void>((resolve) => gunzip.once('end', resolve).once('close', resolve));
+  try {
+    for await (const chunk of file)
+      for (let at = 0; at < chunk.length && gunzip.writable && gunzip.readable; at += PACKED) {
+        await Promise.race([new Promise<void>((resolve) => gunzip.write(chunk.subarray(at, at + PACKED), () => resolve())), over]);
+        yield* ready.splice(0);
+      }
+    gunzip.end();
+    await over;
+    yield* ready;
+    return failure;
+  } finally {
+    gunzip.destroy();
+  }
 }
 
 async function peek(path: string, name: string): Promise<{ size: number; head: Buffer }> {

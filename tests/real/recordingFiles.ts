@@ -1,0 +1,28 @@
+import { mkdtempSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { recordingSource } from '../../adapters/recording/source.js';
+import { RecordingSink } from '../adapters/recordingSink.js';
+import { wantedChannels } from '../adapters/recordingRows.js';
+
+/** A fresh path with these bytes. */
+export function fileOf(bytes: string | Buffer, name = 'run.csv'): string {
+  const path = join(mkdtempSync(join(tmpdir(), 'kilter-recording-')), name);
+  writeFileSync(path, bytes);
+  return path;
+}
+
+/** `time,flow` with rows from <= k < to: value k at k seconds. */
+export const rows = (from: number, to: number): string => Array.from({ length: to - from }, (_, i) => `${from + i},${from + i}\n`).join('');
+
+/** Everything that a recording gives to a sink. */
+export async function readAll(path: string, ...names: readonly string[]): Promise<RecordingSink> {
+  const sink = new RecordingSink();
+  const source = recordingSource('old', { path }, wantedChannels(...(names.length > 0 ? names : ['flow'])));
+  source.start(sink);
+  await source.ended;
+  await source.stop();
+  return sink;
+}
+
+export const lastWords = (sink: RecordingSink): string => sink.phases.at(-1)?.sentence ?? '';
