@@ -23,7 +23,6 @@ export const INSTRUMENTS: readonly Instrument[] = [
   { channel: 'supply', unit: 'V', centre: 24.05, sigma: 0.06, resolution: 0.01, range: [0, 32] },
 ];
 
-export { EVERY, ROUND, SCHEDULE, SETTLING, faultAt } from './schedule.js';
 
 /** The number of an instrument in INSTRUMENTS; -1 where the cell has none of that name. */
 export const instrumentAt = (channel: string): number => INSTRUMENTS.findIndex((instrument) => instrument.channel === channel);

@@ -10,7 +10,6 @@ import { EVERY, faultToTell } from './schedule.js';
 const BEHIND = 20; // steps that are made up for after a pause; what lies further back is left out, as real time leaves it out
 const UNREAD = 65_536; // bytes of lines that may wait for a reader
 
-export { LINE_CHANNELS, MQTT_CHANNELS, pointerOf, topicOf } from './demoChannels.js';
 
 export interface DemoRig {
   /** Address of the embedded broker. */

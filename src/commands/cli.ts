@@ -52,3 +52,11 @@ export function say(text = ''): void {
 export function sayJson(value: unknown): void {
   process.stdout.write(JSON.stringify(value) + '\n');
 }
+
+/**
+ * To be called when a live verb has ended and everything is on disk: what still holds the process, such as a terminal that
+ * no longer reads or a port that does not close, is given a moment and no more.
+ */
+export function leaveSoon(): void {
+  setTimeout(() => process.exit(), 300).unref();
+}

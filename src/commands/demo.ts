@@ -5,8 +5,8 @@ import { stdinSource } from '../../adapters/stdin/source.js';
 import type { MqttOptions, StdinOptions } from '../../adapters/options.js';
 import type { Source } from '../../adapters/source.js';
 import { mqttSource } from '../../adapters/mqtt/source.js';
-import { EVERY, INSTRUMENTS, SETTLING } from '../../adapters/simulated/cell.js';
-import { LINE_CHANNELS, MQTT_CHANNELS, pointerOf, startDemoRig, topicOf, type DemoRig } from '../../adapters/simulated/demoRig.js';
+import { DEMO_CHANNELS, LINE_CHANNELS, type DemoChannel } from '../../adapters/simulated/demoChannels.js';
+import { startDemoRig, type DemoRig } from '../../adapters/simulated/demoRig.js';
 import { formatDuration } from '../engine/format.js';
 import { wantedBySource } from '../stand/open.js';
 import { standPrice } from '../stand/price.js';
@@ -15,13 +15,6 @@ import type { ChannelConfig, Stand } from '../stand/types.js';
 import { clean } from '../text/clean.js';
 import { UserError } from '../text/errors.js';
 import { parse, verb } from './cli.js';
-
-/**
- * Textbook limits cry wolf every few seconds at ten readings a second. The demo stretches the zones by 1.5 and asks for
- * longer runs: demoStand's tests hold that it gives less than one false alarm in two hours, and finds every fault.
- */
-export const DEMO_K = 4.5;
-export const DEMO_SIDE_RUN = 24;
 
 const LINES: StdinOptions = { lines: 'csv', columns: LINE_CHANNELS, maxLine: 256 };
 
@@ -77,35 +70,15 @@ export function demoStand(logFile: string): Stand {
       { name: 'bus', kind: 'mqtt', options: mqttOptions('mqtt://127.0.0.1:0') },
       { name: 'logger', kind: 'stdin', options: LINES },
     ],
-    channels: INSTRUMENTS.map(({ channel }) => demoChannel(channel)),
+    channels: DEMO_CHANNELS.map(channelConfig),
     log: { file: logFile, maxBytes: 10e6 },
   };
 }
 
-function demoChannel(channel: string): ChannelConfig {
-  const instrument = INSTRUMENTS.find((candidate) => candidate.channel === channel)!;
-  const overMqtt = (MQTT_CHANNELS as readonly string[]).includes(channel);
+function channelConfig({ over, topic, value, field, learn, ...watched }: DemoChannel): ChannelConfig {
   return {
-    origin: overMqtt
-      ? { source: 'bus', field: null, topic: topicOf(channel), value: pointerOf(channel), time: null, sequence: null }
-      : { source: 'logger', field: channel, topic: null, value: null, time: null, sequence: null },
-    spec: {
-      channel,
-      unit: instrument.unit,
-      every: EVERY,
-      silentAfter: 2000,
-      range: instrument.range,
-      tolerance: channel === 'flow' ? [38, 44] : null,
-      resolution: instrument.resolution,
-      band: { learn: SETTLING },
-      rules: ['one-beyond-3', 'two-of-three-beyond-2', 'eight-one-side'],
-      k: DEMO_K,
-      sideRun: DEMO_SIDE_RUN,
-      frozen: true,
-      frozenOdds: 1e-9,
-      window: 500,
-      clearAfter: 30,
-    },
+    origin: { source: over === 'mqtt' ? 'bus' : 'logger', field, topic, value, time: null, sequence: null },
+    spec: { ...watched, band: { learn }, frozen: true, window: 500 },
   };
 }
 

@@ -3,7 +3,7 @@ import type { Kept } from '../stand/runtime.js';
 import { requireTextbook } from '../stand/budget.js';
 import { loadStand } from '../stand/load.js';
 import { UserError } from '../text/errors.js';
-import { FAULT, FINE, parse, verb } from './cli.js';
+import { FAULT, FINE, leaveSoon, parse, verb } from './cli.js';
 import { ProgramLog } from './programLog.js';
 import { standRun, type StandListener, type StandRun } from './standRun.js';
 
@@ -78,6 +78,7 @@ export async function guard(standRun: StandRun, program: ProgramLog, until?: num
   } finally {
     clearInterval(status);
     clearTimeout(timer);
+    leaveSoon();
     process.off('SIGHUP', onHangUp);
   }
 }

@@ -1,5 +1,5 @@
 import { FINE, parse, say, sayJson, verb } from './cli.js';
-import { speaksUtf8 } from './locale.js';
+import { speaksUtf8 } from '../text/locale.js';
 import { oddsPicture, type Part } from './oddsPicture.js';
 import { bandOf, probabilityOf, readNumber, readQuestion, readSd, type Normal, type Question } from './oddsQuestion.js';
 import { bandWords, probabilityWords } from './oddsWords.js';

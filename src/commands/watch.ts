@@ -2,7 +2,7 @@ import { requireTextbook } from '../stand/budget.js';
 import { loadStand } from '../stand/load.js';
 import { watchPrice } from '../stand/price.js';
 import type { Stand } from '../stand/types.js';
-import { FINE, parse, verb } from './cli.js';
+import { FINE, leaveSoon, parse, verb } from './cli.js';
 import { StandViewer } from './standView.js';
 import { standRun, type StandListener } from './standRun.js';
 import type { Source } from '../../adapters/source.js';
@@ -75,5 +75,6 @@ export async function watch(
   await runtime.stop();
   if (ended !== null) process.stderr.write(`kilter: ended by ${ended}.\n`);
   process.stderr.write(`kilter: ${runtime.readings} readings, ${book.raisedCount} alarms; the alarm log is ${stand.log.file}\n`);
+  leaveSoon();
   return FINE;
 }

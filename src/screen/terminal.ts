@@ -1,3 +1,4 @@
+import { speaksUtf8 } from '../text/locale.js';
 import { blessed, type BlessedScreen } from './blessed.js';
 import { consoleCell, plainCell } from './plain.js';
 
@@ -17,8 +18,7 @@ export interface TerminalProfile {
 /** @param env TERM, COLORTERM, NO_COLOR, and LC_ALL, LC_CTYPE, LANG in the precedence of POSIX */
 export function terminalProfile(env: NodeJS.ProcessEnv): TerminalProfile {
   const term = (env['TERM'] ?? '').toLowerCase();
-  const locale = env['LC_ALL'] || env['LC_CTYPE'] || env['LANG'] || '';
-  const unicode = /utf-?8/i.test(locale);
+  const unicode = speaksUtf8(env);
   const linux = term.startsWith('linux');
   const mono = (env['NO_COLOR'] ?? '') !== '' || /^(vt\d|ansi-m|xterm-mono)/.test(term);
   const sixteen = /16color/.test(term);

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import { EVERY, INSTRUMENTS, instrumentAt, readingAt } from '../../adapters/simulated/cell.js';
+import { INSTRUMENTS, instrumentAt, readingAt } from '../../adapters/simulated/cell.js';
 import { normal, uniform } from '../../adapters/simulated/noise.js';
-import { faultAt, faultToTell, ROUND, SCHEDULE, SETTLING, type FaultKind } from '../../adapters/simulated/schedule.js';
+import { EVERY, faultAt, faultToTell, ROUND, SCHEDULE, SETTLING, type FaultKind } from '../../adapters/simulated/schedule.js';
 import { cdf } from '../../src/stats/normal.js';
 
 const N = 100_000;

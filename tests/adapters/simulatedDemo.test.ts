@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import { EVERY, INSTRUMENTS, readingAt } from '../../adapters/simulated/cell.js';
+import { INSTRUMENTS, readingAt } from '../../adapters/simulated/cell.js';
 import { DEMO_CHANNELS, type DemoChannel } from '../../adapters/simulated/demoChannels.js';
-import { ROUND, SCHEDULE, SETTLING, type FaultKind } from '../../adapters/simulated/schedule.js';
+import { EVERY, ROUND, SCHEDULE, SETTLING, type FaultKind } from '../../adapters/simulated/schedule.js';
 import { Channel } from '../../src/engine/channel.js';
 import type { EngineEvent } from '../../src/engine/events.js';
 import { logChance, repeatsNeeded } from '../../src/engine/frozen.js';
