@@ -1,13 +1,20 @@
-import { mkdtempSync, writeFileSync } from 'node:fs';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
+import { afterAll } from 'vitest';
 import { recordingSource } from '../../adapters/recording/source.js';
 import { RecordingSink } from '../adapters/recordingSink.js';
 import { wantedChannels } from '../adapters/recordingRows.js';
 
-/** A fresh path with these bytes. */
+const folders: string[] = [];
+
+afterAll(() => folders.forEach((folder) => rmSync(folder, { recursive: true, force: true })));
+
+/** A fresh path with these bytes, gone after the tests of the file that asked for it. */
 export function fileOf(bytes: string | Buffer, name = 'run.csv'): string {
-  const path = join(mkdtempSync(join(tmpdir(), 'kilter-recording-')), name);
+  const folder = mkdtempSync(join(tmpdir(), 'kilter-recording-'));
+  folders.push(folder);
+  const path = join(folder, name);
   writeFileSync(path, bytes);
   return path;
 }
