@@ -2,43 +2,26 @@ import type { ActiveAlarm } from './alarm.js';
 import { Alarms, type Grounds, type Moment } from './alarms.js';
 import type { Band } from './band.js';
 import { Baseline, predictionLimit } from './baseline.js';
-import { evidenceRoom, keepEvidence, layEvidence, listEvidence } from './evidence.js';
+import { evidenceRoom, layEvidence, listEvidence } from './evidence.js';
 import type { EngineEvent } from './events.js';
-import { layFrozen, logChance, measureStep, repeat, repeats, smallestStep, TOO_MANY, UNLIKE } from './frozen.js';
-import { emptyHistogram, tally } from './histogram.js';
-import { findPatterns, layPatterns, RULE_BIT, sideOf } from './patterns.js';
-import { pushReading, RollingWindow } from './rollingWindow.js';
-import { RULES, type Detector, type Rule, type Side } from './rules.js';
+import { layFrozen, logChance, measureStep, smallestStep } from './frozen.js';
+import { emptyHistogram } from './histogram.js';
+import { BLOCK_BIT, FROZEN_BIT, OFF_SCALE_BIT, OUTSIDE_BIT, quietPath, SETTLING_BIT } from './quietPath.js';
+import { RollingWindow } from './rollingWindow.js';
+import { RULE_BIT, ruleMask, RULES, type Detector, type Rule, type Side } from './rules.js';
 import { pack, unpack, type ChannelSnapshot } from './snapshot.js';
 import type { ChannelSpec } from './spec.js';
-import { CLOCK, INDEX, INTEGERS, LIMITS, READINGS, SILENCE, SUMS, TIME, VALUE, Z } from './state.js';
+import * as state from './state.js';
+import { sideOf, SUPPLEMENTARY, supplementary } from './supplementary.js';
 import type { WindowStatistics } from './window.js';
 import { bandSentence } from './words.js';
 
 /** What a quiet reading gives: always this one, so that nothing is allocated. */
 const NONE: readonly EngineEvent[] = Object.freeze([]);
 
-const AT_VALUE = VALUE;
-const AT_Z = Z;
-const AT_TIME = TIME;
-const AT_INDEX = INDEX;
-// Doubles: newest time of any reading; first tick, for a channel of which nothing ever came.
-const LAST_TIME = CLOCK;
-const WATCH_BEGAN = CLOCK + 1;
-// Doubles: what may be reported, what the work may be, the band, the limit of `inconsistent`.
-const RANGE_LOW = LIMITS;
-const RANGE_HIGH = LIMITS + 1;
-const TOLERANCE_LOW = LIMITS + 2;
-const TOLERANCE_HIGH = LIMITS + 3;
-const CENTRE = LIMITS + 4;
-const SIGMA = LIMITS + 5;
-const PREDICTION = LIMITS + 6;
-// Integers: 1 while a silence has been signalled and no reading came since.
-const SILENT = SILENCE;
-// What a reading did, as one mask: the bits of the rules, and these above them.
-const INCONSISTENT = RULE_BIT.inconsistent;
-const FROZEN_BIT = 1 << RULES.length;
-const OUTSIDE_BIT = 2 << RULES.length;
+// Constants of this file, see state.ts.
+const { VALUE, TIME, LINE1, LINE2, LINE3, RANGE_LOW, RANGE_HIGH, TOLERANCE_LOW, TOLERANCE_HIGH, CENTRE, SIGMA, PREDICTION } = state;
+const { Z, INDEX, LAST_TIME, WATCH_BEGAN, READINGS, S1, SIDE_RUN, ENABLED, HAS_BAND, SILENT, WATCHES_REPEATS, REPEATS, INTEGERS } = state;
 
 /**
  * One channel from reading to signal to alarm: a function of (state, reading) and (state, time) to (state, events).
@@ -53,8 +36,8 @@ export class Channel {
   private readonly window: RollingWindow;
   private readonly baseline: Baseline | null;
   private readonly standing: Alarms;
-  private readonly judgesRepeats: boolean;
-  private readonly judgesSteps: boolean;
+  /** Whether each reading has to go on beyond the quiet path: to the supplementary rules, or to measure its step. */
+  private readonly further: boolean;
   private bandInForce: Band | null = null;
 
   constructor(readonly spec: ChannelSpec) {
@@ -62,19 +45,21 @@ export class Channel {
     const s = new Float64Array(READINGS + spec.window + evidenceRoom(sideRun));
     const { c } = this;
     this.s = s;
-    s.fill(NaN, 0, SUMS);
-    s[AT_INDEX] = -1;
+    s.fill(NaN, 0, S1);
+    s[INDEX] = -1;
     [s[TOLERANCE_LOW], s[TOLERANCE_HIGH]] = tolerance ?? [-Infinity, Infinity];
     // Infinities measure nothing, whatever the range.
     s[RANGE_LOW] = Math.max(range?.[0] ?? -Infinity, -Number.MAX_VALUE);
     s[RANGE_HIGH] = Math.min(range?.[1] ?? Infinity, Number.MAX_VALUE);
     s[PREDICTION] = Infinity;
-    layPatterns(s, c, spec.rules, k, sideRun);
+    [s[LINE1], s[LINE2], s[LINE3]] = [k / 3, (2 * k) / 3, k];
+    c[SIDE_RUN] = sideRun;
+    c[ENABLED] = ruleMask(spec.rules);
+    c[WATCHES_REPEATS] = spec.frozen ? 1 : 0;
     layEvidence(c, READINGS + spec.window, sideRun);
     this.window = new RollingWindow(spec.window, s, c);
     this.standing = new Alarms(spec);
-    this.judgesRepeats = spec.frozen;
-    this.judgesSteps = spec.frozen && spec.resolution === null;
+    this.further = (c[ENABLED] & SUPPLEMENTARY) !== 0 || (spec.frozen && spec.resolution === null);
     if ('learn' in band) this.baseline = new Baseline(band.learn);
     else {
       this.baseline = null;
@@ -122,36 +107,27 @@ export class Channel {
    */
   take(time: number, value: number): readonly EngineEvent[] {
     const { s } = this;
-    s[AT_TIME] = time;
-    s[AT_VALUE] = value;
-    return this.judge(); // so short is `take` that it is inlined where it is called, and boxes neither number
+    s[TIME] = time;
+    s[VALUE] = value;
+    let found = quietPath(s, this.c, this.histogram);
+    if (this.further) found = this.lookFurther(found);
+    return found === 0 && this.standing.none ? NONE : this.attend(found);
   }
 
-  /** Judges the reading at hand. */
-  private judge(): readonly EngineEvent[] {
-    const { s, c } = this;
-    const time = s[AT_TIME]!;
-    const value = s[AT_VALUE]!;
-    const last = s[LAST_TIME]!;
-    s[AT_INDEX]!++;
-    if (time > last || last !== last) s[LAST_TIME] = time;
-    keepEvidence(s, c);
-    if (!(value >= s[RANGE_LOW]! && value <= s[RANGE_HIGH]!)) return this.offScale();
-    if (pushReading(s, c)) this.window.closeBlock();
-    if (this.bandInForce === null) return this.settle();
+  private lookFurther(found: number): number {
+    if ((found & (OFF_SCALE_BIT | SETTLING_BIT)) !== 0) return found;
+    const { s, c, spec } = this;
+    if (spec.frozen && spec.resolution === null) measureStep(s, c, s[SIGMA]!, spec.frozenOdds);
+    return (c[ENABLED]! & SUPPLEMENTARY) === 0 ? found : found | supplementary(s, c);
+  }
 
-    const z = (value - s[CENTRE]!) / s[SIGMA]!;
-    s[AT_Z] = z;
-    tally(s, this.histogram);
-    let found = findPatterns(s, c);
-    if (Math.abs(z) > s[PREDICTION]!) found |= INCONSISTENT;
-    if (this.judgesRepeats) {
-      const like = repeat(s, c);
-      if (like === TOO_MANY) found |= FROZEN_BIT;
-      else if (like === UNLIKE && this.judgesSteps) measureStep(s, c, s[SIGMA]!, this.spec.frozenOdds);
-    }
-    if (value > s[TOLERANCE_HIGH]! || value < s[TOLERANCE_LOW]!) found |= OUTSIDE_BIT;
-    return found === 0 && this.standing.none ? NONE : this.report(found);
+  /** A reading that is not quiet, or found the window's block full. */
+  private attend(found: number): readonly EngineEvent[] {
+    if ((found & OFF_SCALE_BIT) !== 0) return this.offScale();
+    if ((found & BLOCK_BIT) !== 0) this.window.closeBlock();
+    if ((found & SETTLING_BIT) !== 0) return this.settle(found & OUTSIDE_BIT);
+    const signals = found & ~BLOCK_BIT;
+    return signals === 0 && this.standing.none ? NONE : this.report(signals);
   }
 
   /**
@@ -172,35 +148,33 @@ export class Channel {
     return events;
   }
 
-  /** A reading that measures nothing: it counts, but takes part in no statistics, as a missing reading takes part in none. */
   private offScale(): readonly EngineEvent[] {
     const { s, c, spec } = this;
-    s[AT_Z] = NaN;
+    s[Z] = NaN;
     c[SILENT] = 0;
     const events: EngineEvent[] = [];
     const moment = this.moment();
-    const value = s[AT_VALUE]!;
+    const value = s[VALUE]!;
     const side = value > s[RANGE_HIGH]! ? 'high' : value < s[RANGE_LOW]! ? 'low' : null;
     this.standing.signal(events, 'off-scale', side, moment, () => this.grounds(pair(spec.range)));
     this.standing.settle(events, moment, false);
     return events;
   }
 
-  private settle(): readonly EngineEvent[] {
+  private settle(outside: number): readonly EngineEvent[] {
     const { s, baseline, spec, index } = this;
-    const value = s[AT_VALUE]!;
-    const outside = value > s[TOLERANCE_HIGH]! || value < s[TOLERANCE_LOW]!;
-    const events = outside || !this.standing.none ? this.report(outside ? OUTSIDE_BIT : 0) : NONE;
-    if (baseline?.take(value) !== true) return events;
+    const events = outside !== 0 || !this.standing.none ? this.report(outside) : NONE;
+    if (baseline?.take(s[VALUE]!) !== true) return events;
     const band = baseline.band(`learned@${index}`, spec.k, spec.resolution);
     baseline.restart();
     if (band) this.establish(band);
-    return [...events, { event: 'band', channel: spec.channel, index, time: s[AT_TIME]!, band, sentence: bandSentence(spec, band) }];
+    return [...events, { event: 'band', channel: spec.channel, index, time: s[TIME]!, band, sentence: bandSentence(spec, band) }];
   }
 
   private establish(band: Band): void {
     const { s, c, spec } = this;
     this.bandInForce = band;
+    c[HAS_BAND] = 1;
     s[CENTRE] = band.centre;
     s[SIGMA] = band.sigma;
     if (spec.rules.includes('inconsistent')) s[PREDICTION] = predictionLimit(band);
@@ -218,14 +192,14 @@ export class Channel {
     for (const rule of RULES) if (found & RULE_BIT[rule]) signal(rule, sideOf(rule, s, c), () => this.grounds(this.ruleLimits(rule)));
     if (found & FROZEN_BIT) signal('frozen', null, () => this.frozenGrounds());
     if (found & OUTSIDE_BIT)
-      signal('tolerance', s[AT_VALUE]! > s[TOLERANCE_HIGH]! ? 'high' : 'low', () => this.grounds(pair(spec.tolerance)));
+      signal('tolerance', s[VALUE]! > s[TOLERANCE_HIGH]! ? 'high' : 'low', () => this.grounds(pair(spec.tolerance)));
     standing.settle(events, moment, true);
     return events;
   }
 
   private moment(): Moment {
     const { s, index, z } = this;
-    return { index, time: s[AT_TIME]!, value: s[AT_VALUE]!, z, band: this.bandInForce };
+    return { index, time: s[TIME]!, value: s[VALUE]!, z, band: this.bandInForce };
   }
 
   private grounds(limits: Readonly<Record<string, number>>, lnOdds: number | null = null): Grounds {
@@ -242,13 +216,13 @@ export class Channel {
     const { s, c, spec } = this;
     const step = smallestStep(s, spec.resolution) ?? NaN;
     const lnChance = logChance(step, s[SIGMA]!);
-    const times = repeats(c);
+    const times = c[REPEATS]!;
     return this.grounds({ repeats: times, step, chance: Math.exp(lnChance), odds: spec.frozenOdds }, times * lnChance);
   }
 
   /** Index of the newest reading, counted from 0; -1 before the first. */
   get index(): number {
-    return this.s[AT_INDEX]!;
+    return this.s[INDEX]!;
   }
 
   /** The band in force; null while settling. */
@@ -268,12 +242,12 @@ export class Channel {
 
   /** Newest value, NaN and infinities included; null before the first. */
   get value(): number | null {
-    return this.index < 0 ? null : this.s[AT_VALUE]!;
+    return this.index < 0 ? null : this.s[VALUE]!;
   }
 
   /** Deviation of the newest reading in sigmas of the band; null while settling or off the scale. */
   get z(): number | null {
-    return finite(this.s[AT_Z]!);
+    return finite(this.s[Z]!);
   }
 
   /** Standing alarms, oldest first. */

@@ -1,19 +1,8 @@
 import { between, upperTail } from '../stats/normal.js';
-import { FROZEN, REPEATS, VALUE } from './state.js';
-
-const AT_VALUE = VALUE;
-// Doubles: last value; least step seen between unlike readings; steps seen.
-const LAST = FROZEN;
-const LEAST = FROZEN + 1;
-const SEEN = FROZEN + 2;
-const STEP = FROZEN + 3; // from the value before to the last unlike one
-// Integers: repeats of the last value; repeats at which they are no longer credible.
-const REPEATED = REPEATS;
-const NEEDED = REPEATS + 1;
+import { LAST_VALUE, LEAST_STEP, REPEATS, REPEATS_NEEDED, STEP, STEPS_SEEN } from './state.js';
 
 const FEWEST = 4; // repeats that are never too few to be chance
 const STEPS = 20; // steps between unlike readings after which the least of them stands for the resolution
-const MOST = 2 ** 30; // repeats that are counted
 const NEVER = 2 ** 31 - 1;
 
 /*
@@ -26,53 +15,28 @@ const NEVER = 2 ** 31 - 1;
 
 /** Begins to judge by a band. @param resolution null: judged from the readings; @param odds below which repeats count as frozen */
 export function layFrozen(s: Float64Array, c: Int32Array, sigma: number, resolution: number | null, odds: number): void {
-  s[LAST] = NaN;
-  s[LEAST] = Infinity;
-  s[SEEN] = 0;
+  s[LAST_VALUE] = NaN;
+  s[LEAST_STEP] = Infinity;
+  s[STEPS_SEEN] = 0;
   s[STEP] = NaN;
-  c[REPEATED] = 0;
-  c[NEEDED] = resolution === null ? NEVER : repeatsNeeded(logChance(resolution, sigma), odds);
+  c[REPEATS] = 0;
+  c[REPEATS_NEEDED] = resolution === null ? NEVER : repeatsNeeded(logChance(resolution, sigma), odds);
 }
 
-/** What `repeat` finds: an unlike reading, a credible repeat, or one repeat too many. */
-export const UNLIKE = 0;
-export const CREDIBLE = 1;
-export const TOO_MANY = 2;
-
-/** Takes the reading at hand. */
-export function repeat(s: Float64Array, c: Int32Array): number {
-  const value = s[AT_VALUE]!;
-  const last = s[LAST]!;
-  if (value !== last) {
-    s[STEP] = value - last;
-    s[LAST] = value;
-    c[REPEATED] = 0;
-    return 0;
-  }
-  const repeats = c[REPEATED]! + 1;
-  if (repeats <= MOST) c[REPEATED] = repeats;
-  return repeats >= c[NEEDED]! ? 2 : 1;
-}
-
-/** Where the resolution is not known: takes the step to an unlike reading into the guess at it. */
+/** Where the resolution is not known: takes the step to the reading at hand into the guess at it. */
 export function measureStep(s: Float64Array, c: Int32Array, sigma: number, odds: number): void {
   const size = Math.abs(s[STEP]!);
-  if (!(size > 0)) return; // the first reading has no step
-  s[SEEN]!++;
-  if (size < s[LEAST]!) s[LEAST] = size;
-  else if (s[SEEN] !== STEPS) return;
+  if (!(size > 0)) return; // a repeat, or the first reading
+  s[STEPS_SEEN]!++;
+  if (size < s[LEAST_STEP]!) s[LEAST_STEP] = size;
+  else if (s[STEPS_SEEN] !== STEPS) return;
   const known = smallestStep(s, null);
-  if (known !== null) c[NEEDED] = repeatsNeeded(logChance(known, sigma), odds);
-}
-
-/** How often the last value has repeated. */
-export function repeats(c: Int32Array): number {
-  return c[REPEATED]!;
+  if (known !== null) c[REPEATS_NEEDED] = repeatsNeeded(logChance(known, sigma), odds);
 }
 
 /** The step by which repeats are judged; null while it is not known. */
 export function smallestStep(s: Float64Array, resolution: number | null): number | null {
-  return resolution ?? (s[SEEN]! >= STEPS ? s[LEAST]! : null);
+  return resolution ?? (s[STEPS_SEEN]! >= STEPS ? s[LEAST_STEP]! : null);
 }
 
 /** ln(2 Phi(r / 2 sigma) - 1), without cancellation where that probability is near 0 or near 1. */

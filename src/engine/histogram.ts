@@ -1,23 +1,11 @@
-import { Z } from './state.js';
+/** Readings counted by their deviation in quarter sigmas of the band, from -6 to 6 sigma, with a bin below and one above. */
+export const PER_SIGMA = 4;
+export const REACH = 6;
+export const BINS = 2 * REACH * PER_SIGMA + 2;
+/** A full count stays full. */
+export const COUNT_FULL = 0xffffffff;
 
-const AT_Z = Z;
-const PER_SIGMA = 4;
-const REACH = 6;
-const BINS = 2 * REACH * PER_SIGMA;
-const FULL = 0xffffffff;
-
-/**
- * Bins for readings by their deviation in quarter sigmas of the band: bin 0 lies below -6 sigma, bin 1 from -6 to -5.75
- * and so on, the last above 6.
- */
+/** Counts: 0 lies below -6 sigma, 1 from -6 up to -5.75 and so on, the last from 6 on. */
 export function emptyHistogram(): Uint32Array {
-  return new Uint32Array(BINS + 2);
-}
-
-/** Counts the reading at hand. A full count stays full. */
-export function tally(s: Float64Array, counts: Uint32Array): void {
-  const z = s[AT_Z]!;
-  const bin = z >= REACH ? BINS + 1 : z < -REACH ? 0 : ((z + REACH) * PER_SIGMA + 1) | 0;
-  const count = counts[bin]!;
-  if (count < FULL) counts[bin] = count + 1;
+  return new Uint32Array(BINS);
 }

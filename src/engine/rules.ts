@@ -15,3 +15,10 @@ export const RULES = [...ZONE_RULES, ...SUPPLEMENTARY_RULES, 'inconsistent'] as 
 export type Rule = (typeof RULES)[number];
 export type Detector = Rule | (typeof HEALTH_DETECTORS)[number];
 export type Side = 'high' | 'low';
+
+/** Bit of each rule in a mask: its place in RULES. */
+export const RULE_BIT: Readonly<Record<Rule, number>> = Object.fromEntries(RULES.map((rule, i) => [rule, 1 << i])) as Record<Rule, number>;
+
+export function ruleMask(rules: readonly Rule[]): number {
+  return rules.reduce((mask, rule) => mask | RULE_BIT[rule], 0);
+}

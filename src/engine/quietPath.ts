@@ -1,0 +1,113 @@
+import { BINS, COUNT_FULL, PER_SIGMA, REACH } from './histogram.js';
+import { RULE_BIT, RULES } from './rules.js';
+import * as state from './state.js';
+import * as zones from './zoneRules.js';
+
+// Constants of this file, see state.ts.
+const { VALUE, Z, TIME, INDEX, LAST_TIME, RANGE_LOW, RANGE_HIGH, TOLERANCE_LOW, TOLERANCE_HIGH, CENTRE, SIGMA, PREDICTION } = state;
+const { EVIDENCE, EVIDENCE_MASK, EVIDENCE_NEWEST } = state;
+const { READINGS, NEXT, RECORD, RECORD_FIELDS, BLOCK_END, FULL, COUNT, SCALE, ANCHOR, S1, S2, SUM, LOST, LEAST, MOST } = state;
+const { LINE1, LINE2, LINE3, RECENT, ABOVE, BELOW, SIDE_RUN, ENABLED } = state;
+const { HAS_BAND, WATCHES_REPEATS, LAST_VALUE, STEP, REPEATS, REPEATS_NEEDED } = state;
+const { TWO, ONE, SIDE_BITS, KEEP, HOLDS } = zones;
+const [LAST_BIN, FULL_BIN, BINS_PER_SIGMA, FARTHEST] = [BINS - 1, COUNT_FULL, PER_SIGMA, REACH];
+const INCONSISTENT = RULE_BIT.inconsistent;
+const EIGHT = RULES.indexOf('eight-one-side');
+const LONGEST = 30; // a run of 2^30 readings grows no further
+
+/** What `quietPath` found beyond the bits of the rules. */
+export const FROZEN_BIT = 1 << RULES.length;
+export const OUTSIDE_BIT = FROZEN_BIT << 1;
+export const OFF_SCALE_BIT = FROZEN_BIT << 2;
+export const SETTLING_BIT = FROZEN_BIT << 3;
+export const BLOCK_BIT = FROZEN_BIT << 4;
+
+const FROZEN = FROZEN_BIT;
+const OUTSIDE = OUTSIDE_BIT;
+const OFF_SCALE = OFF_SCALE_BIT;
+const SETTLING = SETTLING_BIT;
+const BLOCK = BLOCK_BIT;
+
+/**
+ * Takes the reading at hand through everything that a quiet reading meets, and says what was not quiet about it. One
+ * function over two arrays, since it runs at every reading: no calls, and no branches on what is noise (a comparison
+ * that noise decides anew each time, and no processor foresees, becomes a bit).
+ * @param s the doubles of the channel, c its integers: see state.ts
+ * @returns 0, or the bits of the rules that signal, and FROZEN, OUTSIDE (the tolerance), OFF_SCALE, SETTLING (there is no
+ *   band: the reading has not been judged), BLOCK (the window's block is full and must be closed)
+ */
+export function quietPath(s: Float64Array, c: Int32Array, histogram: Uint32Array): number {
+  const value = s[VALUE]!;
+  const time = s[TIME]!;
+  s[INDEX]!++;
+  const newest = s[LAST_TIME]!;
+  if (time > newest || newest !== newest) s[LAST_TIME] = time;
+
+  // Evidence: the reading as it came.
+  const turn = (c[EVIDENCE_NEWEST]! + 2) & c[EVIDENCE_MASK]!;
+  const place = c[EVIDENCE]! + turn;
+  c[EVIDENCE_NEWEST] = turn;
+  s[place] = time;
+  s[place + 1] = value;
+
+  // A reading that measures nothing takes part in no statistics, as a missing reading takes part in none.
+  if (!(value >= s[RANGE_LOW]! && value <= s[RANGE_HIGH]!)) return OFF_SCALE;
+  let found = value > s[TOLERANCE_HIGH]! || value < s[TOLERANCE_LOW]! ? OUTSIDE : 0;
+
+  // The rolling window: see rollingWindow.ts.
+  const at = c[NEXT]!;
+  const next = at + 1;
+  if (c[FULL] === 0) {
+    s[COUNT] = next;
+    s[SCALE] = 1 / (next * at);
+  }
+  s[READINGS + at] = value;
+  const d = value - s[ANCHOR]!;
+  s[S1]! += d;
+  s[S2]! += d * d;
+  const sum = s[SUM]!;
+  const total = sum + value;
+  const part = total - sum;
+  s[SUM] = total;
+  s[LOST]! += sum - (total - part) + (value - part); // two-sum; Knuth, The Art of Computer Programming 2, 4.2.2
+  if (value < s[LEAST]!) s[LEAST] = value;
+  if (value > s[MOST]!) s[MOST] = value;
+  c[RECORD]! += RECORD_FIELDS;
+  c[NEXT] = next;
+  if (next === c[BLOCK_END]) found |= BLOCK;
+  if (c[HAS_BAND] === 0) return found | SETTLING;
+
+  const z = (value - s[CENTRE]!) / s[SIGMA]!;
+  s[Z] = z;
+  const bin = z >= FARTHEST ? LAST_BIN : z < -FARTHEST ? 0 : ((z + FARTHEST) * BINS_PER_SIGMA + 1) | 0;
+  const count = histogram[bin]!;
+  if (count < FULL_BIN) histogram[bin] = count + 1;
+
+  // The zone rules. A value exactly on a line is not beyond it, exactly on the centre it is on neither side.
+  const far = Math.abs(z);
+  const high = 0 - +(z > 0); // all bits, or none
+  const low = 0 - +(z < 0);
+  const beyond = (+(far > s[LINE1]!) << ONE) | (+(far > s[LINE2]!) << TWO);
+  const recent = ((c[RECENT]! << 1) & KEEP) | (beyond & high) | ((beyond & low) << SIDE_BITS);
+  const above = (c[ABOVE]! + 1 - (c[ABOVE]! >> LONGEST)) & high;
+  const below = (c[BELOW]! + 1 - (c[BELOW]! >> LONGEST)) & low;
+  c[RECENT] = recent;
+  c[ABOVE] = above;
+  c[BELOW] = below;
+  const run = above | below; // one of them is 0
+  found |= (+(far > s[LINE3]!) | HOLDS[recent & 0xff]! | HOLDS[recent >> SIDE_BITS]! | (+(run >= c[SIDE_RUN]!) << EIGHT)) & c[ENABLED]!;
+  if (far > s[PREDICTION]!) found |= INCONSISTENT;
+
+  // Frozen: see frozen.ts.
+  if (c[WATCHES_REPEATS] !== 0) {
+    const last = s[LAST_VALUE]!;
+    s[STEP] = value - last;
+    s[LAST_VALUE] = value;
+    if (value === last) {
+      const repeats = c[REPEATS]! + 1 - (c[REPEATS]! >> LONGEST);
+      c[REPEATS] = repeats;
+      if (repeats >= c[REPEATS_NEEDED]!) found |= FROZEN;
+    } else c[REPEATS] = 0;
+  }
+  return found;
+}
