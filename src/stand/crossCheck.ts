@@ -1,13 +1,17 @@
+import { dirname, resolve } from 'node:path';
 import { parsePointer } from '../../adapters/decoding/pointer.js';
+import { INSTRUMENTS, instrumentAt } from '../../adapters/simulated/cell.js';
 import { clean } from '../text/clean.js';
-import { UserError } from '../text/errors.js';
 import { nearest } from '../text/nearest.js';
-import type { Path, StandDocument } from './document.js';
+import type { StandDocument } from './document.js';
+import type { Path } from './places.js';
 import type { StandFault } from './faults.js';
 import { learnCount, parseDuration, splitOnce } from './quantities.js';
-import { KINDS, type ChannelEntry, type SourceEntry, type StandFile } from './schema.js';
+import type { ChannelEntry, SourceEntry, StandFile } from './schema.js';
+import { clashes, sourceFaults, userFault, type Report } from './sourceCheck.js';
 import { topicFault } from './topic.js';
 
+const MOST = 1_000_000; // readings to learn from: more than a day at ten a second
 const FEWEST = 20; // readings below which a learned sigma is uncertain by more than 16 %
 
 /** What only shows when parts of a stand file are held against each other. */
@@ -19,60 +23,11 @@ export function crossFaults(document: StandDocument, file: StandFile): StandFaul
   if (Object.keys(file.sources).length === 0) fault(['sources'], 'The stand has no source.', 'Name at least one: a serial line, a broker, a recording.');
   if (Object.keys(file.channels).length === 0) fault(['channels'], 'The stand has no channel.', 'Name at least one.');
   for (const [name, source] of Object.entries(file.sources)) sourceFaults(['sources', name], source, fault);
-  const stdins = Object.entries(file.sources).filter(([, { stdin }]) => stdin === true);
-  for (const [name] of stdins.slice(1)) fault(['sources', name], 'Standard input can be the source of a stand only once.', 'Read several fields from one source instead.');
+  clashes(file.sources, fault);
+  repeatedRules(['watch', 'rules'], file.watch.rules, fault);
+  logFault(document.file, file, fault);
   for (const [name, channel] of Object.entries(file.channels)) channelFaults(['channels', name], channel, file, fault);
   return faults;
-}
-
-type Report = (path: Path, what: string, mend?: string | null) => void;
-
-/** Keys of a source that only some kinds take. */
-const ONLY: Readonly<Record<string, readonly (typeof KINDS)[number][]>> = {
-  lines: ['serial', 'stdin'],
-  columns: ['serial', 'stdin'],
-  maxLine: ['serial', 'stdin'],
-  ...Object.fromEntries(['protocol', 'clientId', 'keepalive', 'qos', 'ca', 'cert', 'key', 'user', 'password', 'maxPayload'].map((key) => [key, ['mqtt']])),
-};
-
-function sourceFaults(path: Path, source: SourceEntry, fault: Report): void {
-  const name = clean(String(path[1]), 60);
-  const kinds = KINDS.filter((kind) => source[kind] !== undefined);
-  if (kinds.length !== 1) {
-    fault(
-      path,
-      kinds.length === 0 ? `Nothing says what kind of source ${name} is.` : `${name} says twice what kind of source it is: ${kinds.join(' and ')}.`,
-      `A source has exactly one of: ${KINDS.join(', ')}.`,
-    );
-    return;
-  }
-  const [kind] = kinds;
-  for (const [key, may] of Object.entries(ONLY))
-    if (source[key as keyof SourceEntry] !== undefined && !may.includes(kind!)) fault([...path, key], `A ${kind} source takes no '${key}'.`, `It goes with: ${may.join(', ')}.`);
-  if (source.columns) {
-    if (source.lines !== undefined && source.lines !== 'csv') fault([...path, 'columns'], `Lines of ${source.lines} have no columns.`, "Write 'lines: csv', or take columns out.");
-    const named = source.columns.filter((column) => column !== '-');
-    for (const [i, column] of source.columns.entries())
-      if (column !== '-' && source.columns.indexOf(column) !== i) fault([...path, 'columns', i], `The column '${clean(column, 60)}' stands twice.`, "Name each once; '-' skips one.");
-    if (named.length === 0) fault([...path, 'columns'], 'All columns are skipped.', 'Name at least one.');
-  } else if (source.lines === 'csv') fault([...path, 'lines'], 'Lines of csv need the names of their columns.', "Write 'columns: [flow, inlet]'.");
-  if (source.mqtt !== undefined) addressFaults([...path, 'mqtt'], source.mqtt, fault);
-  if ((source.cert === undefined) !== (source.key === undefined)) fault(path, `${name} has only one of cert and key.`, 'Give both, or neither.');
-}
-
-function addressFaults(path: Path, address: string, fault: Report): void {
-  let url: URL;
-  try {
-    url = new URL(address);
-  } catch {
-    fault(path, `'${clean(address, 80)}' is no address.`, 'Write mqtt://host:1883 or mqtts://host:8883.');
-    return;
-  }
-  if (url.protocol !== 'mqtt:' && url.protocol !== 'mqtts:')
-    fault(path, `'${clean(url.protocol, 20)}' is no way to reach a broker.`, 'Write mqtt://host:1883 or mqtts://host:8883.');
-  else if (url.hostname === '') fault(path, 'The address names no host.', 'Write mqtt://host:1883.');
-  if (url.username !== '' || url.password !== '')
-    fault(path, 'A user name or password stands in the address.', "Take it out; write 'user: {env: NAME}' and 'password: {file: PATH}'.");
 }
 
 function channelFaults(path: Path, channel: ChannelEntry, file: StandFile, fault: Report): void {
@@ -85,8 +40,7 @@ function channelFaults(path: Path, channel: ChannelEntry, file: StandFile, fault
   } else originFaults(path, channel, source, field, fault);
   for (const key of ['value', 'time', 'sequence'] as const) pointerFault([...path, key], channel[key], fault);
   bandFaults(path, channel, fault);
-  const { rules } = channel;
-  for (const [i, rule] of (rules ?? []).entries()) if (rules!.indexOf(rule) !== i) fault([...path, 'rules', i], `The rule ${rule} stands twice.`, 'Take one out.');
+  repeatedRules([...path, 'rules'], channel.rules, fault);
   const { every, silentAfter } = channel;
   if (every !== undefined && silentAfter !== undefined && parseDuration(silentAfter)! <= parseDuration(every)!)
     fault([...path, 'silentAfter'], `Silence would be called after ${silentAfter}, but a reading is due only every ${every}.`, 'Give it several intervals.');
@@ -107,15 +61,45 @@ function originFaults(path: Path, channel: ChannelEntry, source: SourceEntry, fi
   if (!json)
     for (const key of ['value', 'time', 'sequence'] as const)
       if (channel[key] !== undefined) fault([...path, key], `A JSON Pointer needs JSON to point into, but the source gives none.`, "Take it out, or write 'lines: json'.");
-  const { columns } = source;
-  if (columns && !columns.includes(field ?? '')) {
-    const near = field === null ? null : nearest(field, columns);
-    fault(
-      [...path, 'from'],
-      field === null ? 'The channel does not say which column it is.' : `The source has no column '${clean(field, 60)}'.`,
-      near ? `Did you mean '${near}'?` : `Its columns are: ${clean(columns.filter((column) => column !== '-').join(', '), 200)}.`,
-    );
+  fieldFault(path, source, field, String(path[1]), fault);
+}
+
+function fieldFault(path: Path, source: SourceEntry, field: string | null, channel: string, fault: Report): void {
+  const at = [...path, 'from'];
+  if (source.simulated !== undefined) {
+    const asked = field ?? channel;
+    const has = INSTRUMENTS.map((instrument) => instrument.channel);
+    const near = nearest(asked, has);
+    if (instrumentAt(asked) < 0) fault(at, `The simulated cell has no instrument '${clean(asked, 60)}'.`, near ? `Did you mean '${near}'?` : `It has: ${has.join(', ')}.`);
   }
+  if (source.serial === undefined && source.stdin === undefined) return;
+  const named = source.columns?.filter((column) => column !== '-');
+  if (named) {
+    if (field === null ? named.length === 1 : named.includes(field)) return;
+    const near = field === null ? null : nearest(field, named);
+    fault(
+      at,
+      field === null ? 'The channel does not say which column it is.' : `The source has no column '${clean(field, 60)}'.`,
+      near ? `Did you mean '${near}'?` : `Its columns are: ${clean(named.join(', '), 200)}.`,
+    );
+  } else if (source.lines === 'pairs' && !field) fault(at, "The channel does not say which of the line's pairs it is.", "Write its name after the source: 'from: logger/T'.");
+  else if ((source.lines ?? 'number') === 'number' && field !== null)
+    fault(at, `Each line of this source is one number, so it has no field '${clean(field, 60)}'.`, "Take the field out, or write 'columns: [flow, inlet]' at the source.");
+}
+
+function repeatedRules(path: Path, rules: readonly string[] | undefined, fault: Report): void {
+  for (const [i, rule] of (rules ?? []).entries()) if (rules!.indexOf(rule) !== i) fault([...path, i], `The rule ${rule} stands twice.`, 'Take one out.');
+}
+
+/** An alarm log must not be written into a file that is read. */
+function logFault(standFile: string, { log, sources }: StandFile, fault: Report): void {
+  if (log.file === undefined) return;
+  const path = (file: string): string => resolve(dirname(resolve(standFile)), file);
+  const into = path(log.file);
+  const read = Object.values(sources).flatMap(({ recording }) => (recording === undefined ? [] : [path(recording)]));
+  if (into === resolve(standFile)) fault(['log', 'file'], 'The alarm log would be written into the stand file.', 'Give it a file of its own.');
+  else if (read.includes(into)) fault(['log', 'file'], 'The alarm log would be written into a recording that the stand reads.', 'Give it a file of its own.');
+  else if (/[/\\]$/.test(log.file)) fault(['log', 'file'], 'The alarm log is a file, but a folder is named.', "Write 'file: alarms/stand.jsonl'.");
 }
 
 function pointerFault(path: Path, pointer: string | undefined, fault: Report): void {
@@ -123,8 +107,7 @@ function pointerFault(path: Path, pointer: string | undefined, fault: Report): v
   try {
     parsePointer(pointer);
   } catch (error) {
-    if (!(error instanceof UserError)) throw error;
-    fault(path, error.what, error.mend ?? null);
+    userFault(path, error, fault);
   }
 }
 
@@ -139,4 +122,5 @@ function bandFaults(path: Path, { band }: ChannelEntry, fault: Report): void {
       "Write {centre: 41.2, sigma: 0.31}, or 'learn 500'.",
     );
   } else if (count < FEWEST) fault([...path, 'band'], `A band learned from ${count} readings is worth little: its sigma would be uncertain by more than 16 %.`, `Learn from at least ${FEWEST}; 500 is better.`);
+  else if (count > MOST) fault([...path, 'band'], `A band learned from ${count} readings would take too long.`, `Learn from at most ${MOST}; 500 to 5000 do.`);
 }

@@ -20,6 +20,7 @@ export class StandFaults extends UserError {
   }
 }
 
+/** A fault as one line: file:line:column, what is wrong, the mend. */
 export function faultLine(file: string, { line, column, what, mend }: StandFault): string {
-  return [at({ file, line, column }), what, mend].filter(Boolean).join(' ');
+  return [at({ file: file.replace(/\p{Cc}/gu, '·'), line, column }), what, mend].filter(Boolean).join(' ');
 }

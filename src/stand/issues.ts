@@ -1,15 +1,18 @@
 import type { z } from 'zod';
 import { clean } from '../text/clean.js';
 import { nearest } from '../text/nearest.js';
-import type { Path, StandDocument } from './document.js';
+import type { StandDocument } from './document.js';
+import type { Path } from './places.js';
 import type { StandFault } from './faults.js';
 import { standSchema } from './schema.js';
 
 type Issue = z.core.$ZodIssue;
 
+const MOST = 1000; // issues that are looked at, and strange keys of one part: more than anyone reads
+
 /** Turns what the schema found into faults with a place, a sentence and the mend. */
 export function schemaFaults(document: StandDocument, issues: readonly Issue[]): StandFault[] {
-  return issues.flatMap((issue) => faultsOf(document, issue, issue.path));
+  return issues.slice(0, MOST).flatMap((issue) => faultsOf(document, issue, issue.path));
 }
 
 function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault[] {
@@ -17,13 +20,13 @@ function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault
   const shown = clean(where || 'the stand file', 120);
   if (issue.code === 'unrecognized_keys') {
     const known = keysAt(path);
-    return issue.keys.map((key) => {
+    return issue.keys.slice(0, MOST).map((key) => {
       const near = nearest(key, known);
       return {
         ...document.placeOfKey(path, key),
         where: [where, key].filter(Boolean).join('.'),
         what: `There is no key '${clean(key, 60)}' ${where ? `in ${shown}` : 'at the top of a stand file'}.`,
-        mend: near ? `Did you mean '${near}'?` : known.length > 0 ? `It may have: ${known.join(', ')}.` : null,
+        mend: key === '<<' ? 'Mappings are not merged: write its keys out, or take a whole part over by *name.' : near ? `Did you mean '${near}'?` : known.length > 0 ? `It may have: ${known.join(', ')}.` : null,
       };
     });
   }
@@ -37,6 +40,7 @@ function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault
     const reason = issue.issues[0]?.message ?? 'the name will not do';
     return [{ ...document.placeOfKey(path.slice(0, -1), key), where, what: `'${clean(String(key), 60)}': ${reason}.`, mend: null }];
   }
+  if (path.length === 0) return [{ line: 1, column: 1, where, what: 'The file holds no keys.', mend: "A stand file begins with 'stand: ' and its name; config/ holds examples." }];
   const missing = issue.code === 'invalid_type' && issue.input === undefined && !isGiven(document, path);
   if (missing)
     return [{ ...document.place(path.slice(0, -1)), where, what: `${shown} is missing.`, mend: MEND[String(path.at(-1))] ?? 'Every stand file has it; config/ holds examples.' }];
@@ -52,8 +56,11 @@ function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault
       },
     ];
   }
-  return [{ ...document.place(path), where, what: `${shown} ${issue.message}.`, mend: null }];
+  const secret = SECRETS.has(String(path.at(-1)));
+  return [{ ...document.place(path), where, what: `${shown} ${issue.message}.`, mend: secret ? 'Put it into a variable or a file.' : null }];
 }
+
+const SECRETS: ReadonlySet<string> = new Set(['user', 'password']);
 
 const MEND: Readonly<Record<string, string>> = {
   stand: "Give the stand a name: 'stand: Coolant pump cell'.",

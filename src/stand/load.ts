@@ -27,14 +27,20 @@ export function loadStand(file: string): Stand {
   return convert(file, parsed.data);
 }
 
+const MOST = 200; // faults that are told
+
+/** In the order of the file, each once; of very many the first, and how many more there are. */
 function inOrder(faults: StandFault[]): StandFault[] {
   const seen = new Set<string>();
-  return faults
+  const found = faults
     .sort((a, b) => a.line - b.line || a.column - b.column)
     .filter(({ line, column, what }) => {
       const key = `${line}:${column}:${what}`;
       return !seen.has(key) && seen.add(key);
     });
+  if (found.length <= MOST) return found;
+  const { line, column } = found[MOST]!;
+  return [...found.slice(0, MOST), { line, column, where: '', what: `From here on there are ${found.length - MOST} faults more.`, mend: 'Mend those above first.' }];
 }
 
 function convert(file: string, { stand, watch, log, sources, channels }: StandFile): Stand {

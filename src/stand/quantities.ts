@@ -2,21 +2,24 @@
 
 const SPANS: Readonly<Record<string, number>> = { ms: 1, s: 1000, min: 60_000, h: 3_600_000, d: 86_400_000 };
 const SIZES: Readonly<Record<string, number>> = { B: 1, kB: 1e3, MB: 1e6, GB: 1e9 };
+export const DURATION = /^\s*(\d{1,15}(?:\.\d{1,15})?)\s*(ms|s|min|h|d)\s*$/;
+export const SIZE = /^\s*(\d{1,15}(?:\.\d{1,15})?)\s*(B|kB|MB|GB)\s*$/;
+export const RATE = /^\s*(\d{1,15}(?:\.\d{1,15})?)\s+per\s+(hour|day|week|month)\s*$/;
 const PERIODS: Readonly<Record<string, number>> = { hour: 3_600_000, day: 86_400_000, week: 604_800_000, month: 2_629_746_000 };
 
 /** '100 ms', '2 s', '5 min', '1 h', '1 d' in ms. */
 export function parseDuration(text: string): number | null {
-  return scaled(/^\s*(\d+(?:\.\d+)?)\s*(ms|s|min|h|d)\s*$/.exec(text), SPANS);
+  return scaled(DURATION.exec(text), SPANS);
 }
 
 /** '500 kB', '10 MB', '1 GB' in bytes. */
 export function parseSize(text: string): number | null {
-  return scaled(/^\s*(\d+(?:\.\d+)?)\s*(B|kB|MB|GB)\s*$/.exec(text), SIZES);
+  return scaled(SIZE.exec(text), SIZES);
 }
 
 /** '1 per day', '0.5 per week': the mean time between false alarms in ms. A month is a twelfth of a mean year. */
 export function parseRate(text: string): number | null {
-  const match = /^\s*(\d+(?:\.\d+)?)\s+per\s+(hour|day|week|month)\s*$/.exec(text);
+  const match = RATE.exec(text);
   const count = match ? Number(match[1]) : 0;
   return count > 0 ? PERIODS[match![2]!]! / count : null;
 }

@@ -24,7 +24,7 @@ sources:
     columns: [flow, "-", inlet]
   bus:
     mqtt: mqtt://127.0.0.1:1883
-    password: {env: SECRET}
+    user: {env: NAME}
 channels:
   flow:
     from: logger/flow
