@@ -19,6 +19,8 @@ export class TimeColumn {
 
   /** @returns ms since the epoch; NaN where the bytes are no time */
   read(bytes: Buffer, start: number, end: number): number {
+    const whole = wholeNumber(bytes, start, end);
+    if (whole >= 0) return this.epoch(whole);
     if (end - start >= 20 && bytes[start + 4] === 0x2d && bytes[end - 1] === 0x5a) {
       const quick = this.iso(bytes, start, end);
       if (quick === quick) return quick;
@@ -70,4 +72,16 @@ export class TimeColumn {
     const time = this.dateMs + hour * 3_600_000 + minute * 60_000 + second * 1000 + fraction;
     return time < this.dateMs + DAY ? time : NaN;
   }
+}
+
+/** Up to fifteen digits and nothing else, as most epoch times are, exactly; -1 where the bytes are something else. */
+function wholeNumber(bytes: Buffer, start: number, end: number): number {
+  if (end - start > 15 || end === start) return -1;
+  let value = 0;
+  for (let at = start; at < end; at++) {
+    const digit = bytes[at]! - 0x30;
+    if (digit < 0 || digit > 9) return -1;
+    value = value * 10 + digit;
+  }
+  return value;
 }
