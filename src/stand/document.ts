@@ -31,7 +31,7 @@ export class StandDocument {
     const deep = tooDeep(text);
     if (deep !== null) throw new StandFaults(file, [{ ...placeIn(text, deep), where: '', what: TOO_DEEP[0], mend: TOO_DEEP[1] }]);
     // Keys that stand twice are found by Places: the parser's own search takes the square of their number.
-    const document = parseDocument(text, { lineCounter: lines, strict: true, uniqueKeys: false, merge: false, prettyErrors: false, logLevel: 'silent' });
+    const document = parseDocument(text, { lineCounter: lines, strict: true, uniqueKeys: false, merge: false, prettyErrors: false, logLevel: 'error' });
     const read = new StandDocument(file, document, lines);
     const faults = read.faults();
     if (faults.length > 0) throw new StandFaults(file, faults);

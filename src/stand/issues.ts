@@ -12,7 +12,10 @@ const MOST = 1000; // issues that are looked at, and strange keys of one part: m
 
 /** Turns what the schema found into faults with a place, a sentence and the mend. */
 export function schemaFaults(document: StandDocument, issues: readonly Issue[]): StandFault[] {
-  return issues.slice(0, MOST).flatMap((issue) => faultsOf(document, issue, issue.path));
+  const faults = issues.slice(0, MOST).flatMap((issue) => faultsOf(document, issue, issue.path));
+  // A key that is misspelt is also missing: one cause, told once.
+  const meant = new Set(faults.filter(({ mend }) => mend?.startsWith('Did you mean')).map(({ where, mend }) => where.slice(0, where.lastIndexOf('.') + 1) + mend!.split("'")[1]!));
+  return faults.filter(({ where, what }) => !(what.endsWith(' is missing.') && meant.has(where)));
 }
 
 function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault[] {
@@ -26,7 +29,7 @@ function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault
         ...document.placeOfKey(path, key),
         where: [where, key].filter(Boolean).join('.'),
         what: `There is no key '${clean(key, 60)}' ${where ? `in ${shown}` : 'at the top of a stand file'}.`,
-        mend: key === '<<' ? 'Mappings are not merged: write its keys out, or take a whole part over by *name.' : near ? `Did you mean '${near}'?` : known.length > 0 ? `It may have: ${known.join(', ')}.` : null,
+        mend: near === key ? 'It does not go with the other keys here: give one of them.' : key === '<<' ? 'Mappings are not merged: write its keys out, or take a whole part over by *name.' : near ? `Did you mean '${near}'?` : known.length > 0 ? `It may have: ${known.join(', ')}.` : null,
       };
     });
   }
@@ -37,13 +40,13 @@ function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault
   }
   if (issue.code === 'invalid_key') {
     const key = path.at(-1)!;
-    const reason = issue.issues[0]?.message ?? 'the name will not do';
-    return [{ ...document.placeOfKey(path.slice(0, -1), key), where, what: `'${clean(String(key), 60)}': ${reason}.`, mend: null }];
+    const reason = issue.issues[0]?.message ?? 'will not do';
+    return [{ ...document.placeOfKey(path.slice(0, -1), key), where, what: `The name '${clean(String(key), 60)}' ${reason}.`, mend: null }];
   }
   if (path.length === 0) return [{ line: 1, column: 1, where, what: 'The file holds no keys.', mend: "A stand file begins with 'stand: ' and its name; config/ holds examples." }];
   const missing = issue.code === 'invalid_type' && issue.input === undefined && !isGiven(document, path);
   if (missing)
-    return [{ ...document.place(path.slice(0, -1)), where, what: `${shown} is missing.`, mend: MEND[String(path.at(-1))] ?? 'Every stand file has it; config/ holds examples.' }];
+    return [{ ...document.place(path.slice(0, -1)), where, what: `${shown} is missing.`, mend: MEND[String(path.at(-1))] ?? null }];
   if (issue.code === 'invalid_value' && issue.values.length > 1 && typeof readAt(document, path) === 'string') {
     const given = String(readAt(document, path));
     const near = nearest(given, issue.values.map(String));
@@ -56,6 +59,8 @@ function faultsOf(document: StandDocument, issue: Issue, path: Path): StandFault
       },
     ];
   }
+  if (issue.code === 'invalid_type' && issue.expected === 'object')
+    return [{ ...document.place(path), where, what: `${shown} must hold keys of its own, not a single value.`, mend: `It may have: ${keysAt(path).join(', ')}.` }];
   const secret = SECRETS.has(String(path.at(-1)));
   return [{ ...document.place(path), where, what: `${shown} ${issue.message}.`, mend: secret ? 'Put it into a variable or a file.' : null }];
 }

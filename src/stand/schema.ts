@@ -9,14 +9,14 @@ import { DURATION, parseDuration, parseRate, parseSize, RATE, SIZE } from './qua
 /** No control characters, and none that are not seen or turn the direction of what follows. */
 const VISIBLE = /^[^\u0000-\u001f\u007f-\u009f\u00ad\u061c\u180e\u200b-\u200f\u2028-\u202e\u2060-\u206f\ufeff\ufff9-\ufffb]*$/;
 
-const words = (what: string, most: number) =>
+const words = (most: number) =>
   z
-    .string({ error: `${what} must be text` })
-    .min(1, { error: `${what} is empty` })
-    .max(most, { error: `${what} is longer than ${most} characters` })
-    .regex(VISIBLE, { error: `${what} holds control characters` });
+    .string({ error: 'must be text' })
+    .min(1, { error: 'is empty' })
+    .max(most, { error: `is longer than ${most} characters` })
+    .regex(VISIBLE, { error: 'holds control characters' });
 
-const name = (what: string) => words(what, 80).regex(/^[^/\s]+$/, { error: `${what} may hold no blanks and no '/'` });
+const name = words(80).regex(/^[^/\s]+$/, { error: "may hold no blanks and no '/'" });
 
 const number = z.number({ error: 'must be a number' });
 const positive = number.gt(0, { error: 'must be greater than 0' });
@@ -54,7 +54,7 @@ const rule = z.enum(RULES, { error: 'is no rule' });
 const rules = z.array(rule, { error: 'must be a list of rules' });
 const k = positive.max(40, { error: 'must be at most 40' });
 
-const secret = z.union([z.strictObject({ env: words('the variable', 200) }), z.strictObject({ file: words('the file', 1000) })], {
+const secret = z.union([z.strictObject({ env: words(200) }), z.strictObject({ file: words(1000) })], {
   error: 'must be {env: NAME} or {file: PATH}: a secret never stands in a stand file',
 });
 
@@ -62,9 +62,9 @@ const lines = z.enum(['number', 'csv', 'pairs', 'json'], { error: 'must be one o
 
 const serial = z.union(
   [
-    words('the port', 1000),
+    words(1000),
     z.strictObject({
-      path: words('the port', 1000),
+      path: words(1000),
       baudRate: whole.min(50, { error: 'must be at least 50' }).max(12_000_000, { error: 'must be at most 12000000' }).default(9600),
       dataBits: z.literal([5, 6, 7, 8], { error: 'must be 5, 6, 7 or 8' }).default(8),
       parity: z.enum(['none', 'even', 'odd'], { error: 'must be none, even or odd' }).default('none'),
@@ -91,20 +91,20 @@ export const KINDS = ['serial', 'mqtt', 'recording', 'stdin', 'simulated'] as co
 
 const source = z.strictObject({
   serial: serial.optional().describe('A serial line: the path of the port, or {path, baudRate 9600, dataBits 8, parity none, stopBits 1}.'),
-  mqtt: words('the address', 1000).optional().describe('A broker: mqtt://host:port or mqtts://host:port.'),
-  recording: words('the file', 1000).optional().describe('A file of readings, CSV with header or JSON Lines, plain or gzip.'),
+  mqtt: words(1000).optional().describe('A broker: mqtt://host:port or mqtts://host:port.'),
+  recording: words(1000).optional().describe('A file of readings, CSV with header or JSON Lines, plain or gzip.'),
   stdin: z.literal(true, { error: 'must be true' }).optional().describe('Standard input.'),
   simulated: simulated.optional().describe('The simulated coolant-pump cell.'),
   lines: lines.optional().describe('How a line of a serial source or standard input is read. number unless columns are given.'),
-  columns: z.array(words('a column', 80), { error: 'must be a list of names' }).optional().describe("For csv: the columns' names in order; '-' skips one."),
+  columns: z.array(words(80), { error: 'must be a list of names' }).optional().describe("For csv: the columns' names in order; '-' skips one."),
   maxLine: whole.min(8, { error: 'must be at least 8' }).max(65536, { error: 'must be at most 65536' }).optional().describe('Longest line in bytes; 256.'),
   protocol: z.enum(['3.1.1', '5'], { error: "must be '3.1.1' or '5', in quotes" }).optional().describe("MQTT version; '3.1.1'."),
-  clientId: words('the client identifier', 200).optional().describe('Fixed and used by no other client; made from the stand and the host otherwise.'),
+  clientId: words(200).optional().describe('Fixed and used by no other client; made from the stand and the host otherwise.'),
   keepalive: keepalive.optional().describe('MQTT keep-alive; 15 s.'),
   qos: z.literal([0, 1], { error: 'must be 0 or 1' }).optional().describe('MQTT quality of service; 1.'),
-  ca: words('the file', 1000).optional().describe('PEM file of the authority that signed the broker; else those of the system.'),
-  cert: words('the file', 1000).optional().describe("PEM file of kilter's own certificate."),
-  key: words('the file', 1000).optional().describe("PEM file of its key."),
+  ca: words(1000).optional().describe('PEM file of the authority that signed the broker; else those of the system.'),
+  cert: words(1000).optional().describe("PEM file of kilter's own certificate."),
+  key: words(1000).optional().describe("PEM file of its key."),
   user: secret.optional().describe('Where the user name is found: {env: NAME} or {file: PATH}.'),
   password: secret.optional().describe('Where the password is found: {env: NAME} or {file: PATH}.'),
   maxPayload: size(1, 268_435_455, 'at most 268 MB, as MQTT has it').optional().describe('Largest MQTT payload; 64 kB.'),
@@ -117,7 +117,7 @@ const band = z.union(
       sigma: positive,
       n: whole.min(2, { error: 'must be at least 2' }).optional(),
     }),
-    words('the band', 200),
+    words(200),
   ],
   { error: "must be {centre, sigma}, or 'learn' and a number of readings, such as 'learn 500'" },
 );
@@ -130,8 +130,8 @@ const watched = {
 };
 
 const channel = z.strictObject({
-  from: words('the source', 200).describe('source, or source/field.'),
-  topic: words('the topic', 1000).optional().describe('MQTT topic or filter.'),
+  from: words(200).describe('source, or source/field.'),
+  topic: words(1000).optional().describe('MQTT topic or filter.'),
   value: z.string({ error: 'must be text' }).optional().describe('JSON Pointer (RFC 6901) to the number; absent: the payload is the number.'),
   time: z.string({ error: 'must be text' }).optional().describe("JSON Pointer to the reading's own time; absent: the time of arrival."),
   sequence: z.string({ error: 'must be text' }).optional().describe('JSON Pointer to a sequence number: what was seen already is dropped.'),
@@ -154,7 +154,7 @@ const channel = z.strictObject({
 });
 
 export const standSchema = z.strictObject({
-  stand: words('the name of the stand', 120).describe('Name of the stand.'),
+  stand: words(120).describe('Name of the stand.'),
   watch: z
     .strictObject({
       limits: z.enum(['textbook', 'budget'], { error: 'must be textbook or budget' }).default('budget').describe('textbook: k sigmas; budget: limits that keep the false-alarm budget.'),
@@ -165,12 +165,12 @@ export const standSchema = z.strictObject({
     .describe('How the stand is watched, and defaults for all channels.'),
   log: z
     .strictObject({
-      file: words('the file', 1000).optional().describe('The alarm log, relative to the stand file; <stand file>.alarms.jsonl.'),
+      file: words(1000).optional().describe('The alarm log, relative to the stand file; <stand file>.alarms.jsonl.'),
       maxSize: size(10_000, 1e12, 'from 10 kB to 1000 GB').default('10 MB').describe('Size at which a new file is begun.'),
     })
     .prefault({}),
-  sources: z.record(name('the name of a source'), source, { error: 'must be sources by name' }),
-  channels: z.record(name('the name of a channel'), channel, { error: 'must be channels by name' }),
+  sources: z.record(name, source, { error: 'must be sources by name' }),
+  channels: z.record(name, channel, { error: 'must be channels by name' }),
 });
 
 export type StandFile = z.output<typeof standSchema>;

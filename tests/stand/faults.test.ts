@@ -47,6 +47,30 @@ const SPOILED: [string, string, number, number, RegExp, RegExp | null][] = [
   ['band: learn 500', 'band: bearing-2026', 28, 11, /no accepted band/, /learn 500/],
   ['    every: 1 s', '    every: 1 s\n    silentAfter: 500 ms', 28, 18, /Silence would be called/, null],
   ['    every: 1 s', '    every: 1 s\n    every: 2 s', 28, 5, /stands twice/, null],
+  ['  limits: textbook', '  limits: textbook\n  rules: [trend-of-6, trend-of-6]', 4, 23, /stands twice/, null],
+  ['    user: {env: NAME}', '    password: {env: NAME}', 12, 15, /no user name/, /give both/],
+  ['    user: {env: NAME}', '    user: {enw: NAME}', 12, 12, /no key 'enw'/, /'env'/],
+  ['    user: {env: NAME}', '    ca: ca.pem', 12, 9, /for an encrypted connection/, /mqtts/],
+  ['    user: {env: NAME}', '    clientId: a\n  twin:\n    mqtt: mqtt://127.0.0.1:1883\n    clientId: a', 15, 15, /broker would drop/, null],
+  ['    user: {env: NAME}', '  twin: {serial: /dev/ttyS9}', 12, 18, /read by another source/, null],
+  ['    user: {env: NAME}', '    keepalive: 1 ms', 12, 16, /from 1 s/, null],
+  ['mqtt://127.0.0.1:1883', '"mqtt://me:hunter2@ho st"', 11, 11, /address of the broker is no address/, null],
+  ['    mqtt: mqtt://127.0.0.1:1883\n    user: {env: NAME}', '    simulated: pump cell', 24, 12, /Only a broker has topics/, null],
+  ['  bus:\n    mqtt: mqtt://127.0.0.1:1883\n    user: {env: NAME}', '  bus: mqtt://127.0.0.1', 10, 8, /must hold keys of its own/, /serial, mqtt/],
+  ['sources:', 'log: {file: ./x/}\nsources:', 5, 13, /a folder is named/, null],
+  ['every: 100 ms', 'every: 400 d', 17, 12, /to 366 d/, null],
+  ['unit: L/min', 'unit: "\\e[2J"', 16, 11, /control characters/, null],
+  ['stand: Bench', 'stand: "a\\u202Eb"', 1, 8, /control characters/, null],
+  ['from: logger/flow', 'from: logger/-', 15, 11, /no column '-'/, null],
+  ['band: learn 500', 'band: learn 9999999', 28, 11, /take too long/, null],
+  ['{centre: 41.2, sigma: 0.31}', '{center: 41.2, sigma: 0.31}', 21, 12, /no key 'center'/, /'centre'/],
+  ['    unit: L/min', '    <<: {unit: x}', 16, 5, /no key '<<'/, /not merged/],
+  ['  bearing:', '  __proto__:', 23, 3, /cannot be a key/, null],
+  ['  bearing:', '  ? [a, b]\n  :', 23, 5, /cannot be a key/, null],
+  ['  bearing:', '  a/b:', 23, 3, /no blanks and no '\/'/, null],
+  ['stand: Bench', 'stand: !mark Bench', 1, 8, /begins with !/, null],
+  ['stand: Bench', '%YAML 1.1\n---\nstand: Bench', 1, 1, /older YAML/, null],
+  ['  bearing:', '---\n  bearing:', 23, 1, /second document/, null],
   ['    every: 1 s', '\tevery: 1 s', 27, 1, /tab/i, /blanks/],
 ];
 
@@ -87,9 +111,35 @@ describe('a fault in a stand file is told with its place and the mend', () => {
     expect(() => loadStand('/')).toThrow(/folder/);
   });
 
+  it('a device that never ends is read no further than a stand file may be long', () => {
+    expect(() => loadStand('/dev/zero')).toThrow(/1 MiB/);
+  });
+
+  it.each([
+    ['brackets', '['.repeat(60_000)],
+    ['dashes', '- '.repeat(60_000)],
+    ['lines', Array.from({ length: 700 }, (_, i) => `${' '.repeat(i)}a:`).join('\n')],
+  ])('%s within each other without end are refused before they are followed', (_what, text) => {
+    expect(() => loadStand(standFile(text))).toThrow(/deeper than/);
+  });
+
+  it('of thousands of faults the first two hundred are told, and how many follow', () => {
+    const keys = Array.from({ length: 900 }, (_, i) => `key${i}: 1`).join('\n');
+    const faults = faultsOf(`${GOOD}${keys}\n`);
+    expect(faults).toHaveLength(201);
+    expect(faults.at(-1)).toMatchObject({ line: 229, what: 'From here on there are 700 faults more.' });
+  });
+
+  it('one list may be taken over by hundreds of channels', () => {
+    const taken = Array.from({ length: 300 }, (_, i) => `  c${i}:\n    from: logger/inlet\n    rules: *common\n`).join('');
+    const text = GOOD.replace('rules: [one', 'rules: &common [one') + taken;
+    expect(loadStand(standFile(text)).channels).toHaveLength(302);
+  });
+
   it('aliases that unfold without measure are refused', () => {
     const bomb = ['a: &a [x, x, x, x, x, x, x, x, x]', ...Array.from('bcdefgh', (c, i) => `${c}: &${c} [${Array(9).fill(`*${'abcdefg'[i]!}`).join(', ')}]`)].join('\n');
-    expect(() => loadStand(standFile(bomb))).toThrow(UserError);
+    const [fault] = faultsOf(bomb);
+    expect(fault!.what).toMatch(/unfold without measure/);
   });
 
   it('a file spoiled anywhere is a good file or a fault in sentences, never a crash', () => {
