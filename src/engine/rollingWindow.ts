@@ -13,7 +13,7 @@ import type { WindowStatistics } from './window.js';
  *
  * Fresh and rest sum deviations from one anchor, a reading that stays in the window as long as the block is written. With
  * a summed reading as anchor, S2 - S1^2 / n loses at most a factor n of the last place. What is kept beyond that time, the
- * aggregate of a whole block, is taken about the block's own mean.
+ * aggregate of a whole block, is summed once more about the block's own mean where the anchor was far from it.
  *
  * The first block has one place: it is closed by its first reading, so that the very first one needs no anchor.
  */
@@ -37,6 +37,8 @@ const A_LOST = 5;
 const A_LEAST = 6;
 const A_MOST = 7;
 const FIELDS = 8;
+/** Share of S2 that must be left in S2 - S1^2 / n: less, and more than five bits are lost. */
+const ENOUGH = 1 / 32;
 
 let scratch = new Float64Array(512); // for order statistics; shared, since they are asked for one at a time
 
@@ -126,33 +128,39 @@ export class RollingWindow {
     this.openBlock();
   }
 
-  /** The aggregate of the block just written. */
+  /** The aggregate of the block just written, from its sums where these do. */
   private summarise(base: number): void {
     const { s, c, blocks } = this;
-    const first = READINGS + c[BLOCK_BEGIN]!;
-    const after = READINGS + c[BLOCK_END]!;
-    const n = after - first;
+    const n = c[BLOCK_END]! - c[BLOCK_BEGIN]!;
+    const s1 = s[S1]!;
+    const s2 = s[S2]!;
+    const m2 = s2 - (s1 * s1) / n;
+    blocks[base + A_N] = n;
+    blocks[base + A_ANCHOR] = s[ANCHOR]!;
+    blocks[base + A_OFFSET] = s1 / n;
+    blocks[base + A_M2] = m2;
+    blocks[base + A_SUM] = s[SUM]!;
+    blocks[base + A_LOST] = s[LOST]!;
+    blocks[base + A_LEAST] = s[LEAST]!;
+    blocks[base + A_MOST] = s[MOST]!;
+    if (!(m2 > s2 * ENOUGH)) this.resum(base);
+  }
+
+  /** Deviations once more, about the block's own mean: the anchor was so far from it that the difference lost digits. */
+  private resum(base: number): void {
+    const { s, c, blocks } = this;
+    const n = blocks[base + A_N]!;
     const anchor = s[SUM]! / n;
     let s1 = 0;
     let s2 = 0;
-    let least = Infinity;
-    let most = -Infinity;
-    for (let i = first; i < after; i++) {
-      const x = s[i]!;
-      const d = x - anchor;
+    for (let i = READINGS + c[BLOCK_BEGIN]!; i < READINGS + c[BLOCK_END]!; i++) {
+      const d = s[i]! - anchor;
       s1 += d;
       s2 += d * d;
-      if (x < least) least = x;
-      if (x > most) most = x;
     }
-    blocks[base + A_N] = n;
     blocks[base + A_ANCHOR] = anchor;
     blocks[base + A_OFFSET] = s1 / n;
     blocks[base + A_M2] = Math.max(0, s2 - (s1 * s1) / n);
-    blocks[base + A_SUM] = s[SUM]!;
-    blocks[base + A_LOST] = s[LOST]!;
-    blocks[base + A_LEAST] = least;
-    blocks[base + A_MOST] = most;
   }
 
   /** A reading that outlasts the block about to be written: the middle one of the newest three, so that it is no lone outlier. */
@@ -189,29 +197,30 @@ export class RollingWindow {
     s[S2] = 0;
     s[SUM] = 0;
     s[LOST] = 0;
-    s[LEAST] = least; // the middle stays in the window as long as the block is written: few readings pass its extremes
-    s[MOST] = most;
+    s[LEAST] = Infinity;
+    s[MOST] = -Infinity;
     s[ANCHOR] = anchor;
-    // In the first lap there is no old block: then every record is the middle.
+    let record = (after - first) * RECORD_FIELDS;
     for (let i = after - 1; i >= first; i--) {
       if (full) {
         const x = s[i]!;
         const d = x - anchor;
+        const total = sum + x;
+        const part = total - sum;
         s1 += d;
         s2 += d * d;
-        const total = sum + x;
-        lost += roundingError(sum, x, total);
+        lost += sum - (total - part) + (x - part);
         sum = total;
         if (x < least) least = x;
         if (x > most) most = x;
-      }
-      const record = (i - first) * RECORD_FIELDS;
-      rest[record + R_S1] = s1;
-      rest[record + R_S2] = s2;
-      rest[record + R_SUM] = sum;
-      rest[record + R_LOST] = lost;
-      rest[record + R_LEAST] = least;
-      rest[record + R_MOST] = most;
+      } // in the first lap there is no old block: then every record is the middle
+      record = (record - RECORD_FIELDS) | 0;
+      rest[record] = s1; // R_S1
+      rest[(record + R_S2) | 0] = s2;
+      rest[(record + R_SUM) | 0] = sum;
+      rest[(record + R_LOST) | 0] = lost;
+      rest[(record + R_LEAST) | 0] = least;
+      rest[(record + R_MOST) | 0] = most;
     }
   }
 
