@@ -70,8 +70,10 @@ export class StandDocument {
     const found = [...errors, ...warnings].map(({ code, pos }) => at(pos[0], SYNTAX[code] ?? NO_YAML));
     if (directives.yaml.explicit && directives.yaml.version !== '1.2') found.push(at(0, OLD_YAML));
     // What follows a fault of YAML is guesswork.
-    if (found.length === 0)
-      found.push(...this.places.strange.map((offset) => at(offset, STRANGE)), ...this.places.twice.map(({ offset, path }) => at(offset, TWICE, path.map(String).join('.'))));
+    if (found.length === 0) {
+      for (const offset of this.places.strange.slice(0, MOST)) found.push(at(offset, STRANGE));
+      for (const { offset, path } of this.places.twice.slice(0, MOST)) found.push(at(offset, TWICE, path.map(String).join('.')));
+    }
     found.sort((a, b) => a.line - b.line || a.column - b.column);
     return found.filter(({ line }, i) => line !== found[i - 1]?.line).slice(0, MOST);
   }

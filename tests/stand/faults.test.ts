@@ -1,3 +1,5 @@
+import { writeFileSync } from 'node:fs';
+import { basename } from 'node:path';
 import { describe, expect, it } from 'vitest';
 import { StandFaults, type StandFault } from '../../src/stand/faults.js';
 import { loadStand } from '../../src/stand/load.js';
@@ -128,6 +130,20 @@ describe('a fault in a stand file is told with its place and the mend', () => {
     const faults = faultsOf(`${GOOD}${keys}\n`);
     expect(faults).toHaveLength(201);
     expect(faults.at(-1)).toMatchObject({ line: 229, what: 'From here on there are 700 faults more.' });
+  });
+
+  it('a hundred thousand keys that are none end in sentences', () => {
+    const faults = faultsOf('?\n'.repeat(150_000));
+    expect(faults).toHaveLength(20);
+    expect(faults[0]).toMatchObject({ line: 1, what: 'This cannot be a key.' });
+  });
+
+  it('an alarm log that would be written into the stand file, or into what it reads, is refused', () => {
+    const file = standFile('');
+    writeFileSync(file, GOOD.replace('sources:', `log: {file: ${basename(file)}}\nsources:`));
+    expect(() => loadStand(file)).toThrow(/:5:13: The alarm log would be written into the stand file\./);
+    const [fault] = faultsOf(GOOD.replace('sources:', 'log: {file: ./run.csv}\nsources:\n  run: {recording: run.csv}'));
+    expect(fault).toMatchObject({ line: 5, what: 'The alarm log would be written into a recording that the stand reads.' });
   });
 
   it('one list may be taken over by hundreds of channels', () => {
