@@ -4,6 +4,7 @@ import { INSTRUMENTS, instrumentAt } from '../../adapters/simulated/cell.js';
 import { clean } from '../text/clean.js';
 import { nearest } from '../text/nearest.js';
 import type { StandDocument } from './document.js';
+import type { PartialStand } from './partial.js';
 import type { Path } from './places.js';
 import type { StandFault } from './faults.js';
 import { learnCount, parseDuration, splitOnce } from './quantities.js';
@@ -17,27 +18,39 @@ const FEWEST = 20; // readings below which a learned sigma is uncertain by more 
 /** What only shows when parts of a stand file are held against each other. */
 export function crossFaults(document: StandDocument, file: StandFile): StandFault[] {
   const faults: StandFault[] = [];
-  const fault = (path: Path, what: string, mend: string | null = null): void => {
-    faults.push({ ...document.place(path), where: path.map(String).join('.'), what, mend });
-  };
+  const fault = reporter(document, faults);
   if (Object.keys(file.sources).length === 0) fault(['sources'], 'The stand has no source.', 'Name at least one: a serial line, a broker, a recording.');
   if (Object.keys(file.channels).length === 0) fault(['channels'], 'The stand has no channel.', 'Name at least one.');
-  for (const [name, source] of Object.entries(file.sources)) sourceFaults(['sources', name], source, fault);
-  clashes(file.sources, fault);
   repeatedRules(['watch', 'rules'], file.watch.rules, fault);
   logFault(document.file, file, fault);
-  for (const [name, channel] of Object.entries(file.channels)) channelFaults(['channels', name], channel, file, fault);
+  return faults.concat(partFaults(document, { sources: file.sources, channels: file.channels, broken: new Set() }));
+}
+
+/** The same of sources and channels alone, which may be the right ones of a faulty file. */
+export function partFaults(document: StandDocument, parts: PartialStand): StandFault[] {
+  const faults: StandFault[] = [];
+  const fault = reporter(document, faults);
+  for (const [name, source] of Object.entries(parts.sources)) sourceFaults(['sources', name], source, fault);
+  clashes(parts.sources, fault);
+  for (const [name, channel] of Object.entries(parts.channels)) channelFaults(['channels', name], channel, parts, fault);
   return faults;
 }
 
-function channelFaults(path: Path, channel: ChannelEntry, file: StandFile, fault: Report): void {
+function reporter(document: StandDocument, faults: StandFault[]): Report {
+  return (path, what, mend = null) => {
+    faults.push({ ...document.place(path), where: path.map(String).join('.'), what, mend });
+  };
+}
+
+function channelFaults(path: Path, channel: ChannelEntry, { sources, broken }: PartialStand, fault: Report): void {
   const [sourceName, field] = splitOnce(channel.from);
-  const source = Object.hasOwn(file.sources, sourceName) ? file.sources[sourceName] : undefined;
-  if (!source) {
-    const names = Object.keys(file.sources);
+  const source = Object.hasOwn(sources, sourceName) ? sources[sourceName] : undefined;
+  if (source) originFaults(path, channel, source, field, fault);
+  else if (!broken.has(sourceName)) {
+    const names = [...Object.keys(sources), ...broken];
     const near = nearest(sourceName, names);
     fault([...path, 'from'], `There is no source '${clean(sourceName, 60)}'.`, near ? `Did you mean '${near}'?` : names.length > 0 ? `There are: ${clean(names.join(', '), 200)}.` : null);
-  } else originFaults(path, channel, source, field, fault);
+  }
   for (const key of ['value', 'time', 'sequence'] as const) pointerFault([...path, key], channel[key], fault);
   bandFaults(path, channel, fault);
   repeatedRules([...path, 'rules'], channel.rules, fault);

@@ -89,7 +89,7 @@ const simulated = z.union(
 /** A source has exactly one of these keys; it says what kind of source it is. */
 export const KINDS = ['serial', 'mqtt', 'recording', 'stdin', 'simulated'] as const;
 
-const source = z.strictObject({
+export const sourceSchema = z.strictObject({
   serial: serial.optional().describe('A serial line: the path of the port, or {path, baudRate 9600, dataBits 8, parity none, stopBits 1}.'),
   mqtt: words(1000).optional().describe('A broker: mqtt://host:port or mqtts://host:port.'),
   recording: words(1000).optional().describe('A file of readings, CSV with header or JSON Lines, plain or gzip.'),
@@ -129,7 +129,7 @@ const watched = {
   window: whole.min(2, { error: 'must be at least 2' }).max(100_000, { error: 'must be at most 100000' }).optional().describe('Readings in the rolling window; 500.'),
 };
 
-const channel = z.strictObject({
+export const channelSchema = z.strictObject({
   from: words(200).describe('source, or source/field.'),
   topic: words(1000).optional().describe('MQTT topic or filter.'),
   value: z.string({ error: 'must be text' }).optional().describe('JSON Pointer (RFC 6901) to the number; absent: the payload is the number.'),
@@ -169,8 +169,8 @@ export const standSchema = z.strictObject({
       maxSize: size(10_000, 1e12, 'from 10 kB to 1000 GB').default('10 MB').describe('Size at which a new file is begun.'),
     })
     .prefault({}),
-  sources: z.record(name, source, { error: 'must be sources by name' }),
-  channels: z.record(name, channel, { error: 'must be channels by name' }),
+  sources: z.record(name, sourceSchema, { error: 'must be sources by name' }),
+  channels: z.record(name, channelSchema, { error: 'must be channels by name' }),
 });
 
 export type StandFile = z.output<typeof standSchema>;

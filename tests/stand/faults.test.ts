@@ -95,6 +95,15 @@ describe('a fault in a stand file is told with its place and the mend', () => {
     expect(faults.map(({ line }) => line)).toEqual([16, 17, 20]);
   });
 
+  it('all at once, though some show only when right parts are held against each other', () => {
+    const faults = faultsOf(GOOD.replace('    unit: L/min', '    units: L/min').replace('from: bus', 'from: bsu').replace('    lines: csv', '    lines: cvs'));
+    expect(faults.map(({ line, what }) => [line, what])).toEqual([
+      [8, "sources.logger.lines: 'cvs' must be one of number, csv, pairs, json."],
+      [16, "There is no key 'units' in channels.flow."],
+      [24, "There is no source 'bsu'."],
+    ]);
+  });
+
   it('hostile names reach the message cleaned', () => {
     const [fault] = faultsOf(GOOD.replace('    unit: L/min', '    "\\e[2Junit": L/min'));
     expect(fault!.what).toContain('·[2Junit');
