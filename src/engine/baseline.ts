@@ -53,7 +53,7 @@ export class Baseline {
       centre,
       sigma,
       n,
-      centreUncertainty: sigma / Math.sqrt(n),
+      centreUncertainty: (sd > 0 ? sd : sigma) / Math.sqrt(n),
       sigmaUncertainty: (sigma * Math.sqrt(1 - correction * correction)) / correction,
       k,
       low: centre - k * sigma,

@@ -56,7 +56,7 @@ export class Channel {
     c[SIDE_RUN] = sideRun;
     c[ENABLED] = ruleMask(spec.rules);
     c[WATCHES_REPEATS] = spec.frozen ? 1 : 0;
-    layEvidence(c, READINGS + spec.window, sideRun);
+    layEvidence(s, c, READINGS + spec.window, sideRun);
     this.window = new RollingWindow(spec.window, s, c);
     this.standing = new Alarms(spec);
     this.further = (c[ENABLED] & SUPPLEMENTARY) !== 0 || (spec.frozen && spec.resolution === null);
@@ -156,7 +156,7 @@ export class Channel {
     const moment = this.moment();
     const value = s[VALUE]!;
     const side = value > s[RANGE_HIGH]! ? 'high' : value < s[RANGE_LOW]! ? 'low' : null;
-    this.standing.signal(events, 'off-scale', side, moment, () => this.grounds(pair(spec.range)));
+    this.standing.signal(events, 'off-scale', side, moment, () => this.grounds(pair(spec.range), null, true));
     this.standing.settle(events, moment, false);
     return events;
   }
@@ -202,8 +202,8 @@ export class Channel {
     return { index, time: s[TIME]!, value: s[VALUE]!, z, band: this.bandInForce };
   }
 
-  private grounds(limits: Readonly<Record<string, number>>, lnOdds: number | null = null): Grounds {
-    return { limits, readings: listEvidence(this.s, this.c), lnOdds };
+  private grounds(limits: Readonly<Record<string, number>>, lnOdds: number | null = null, hand = false): Grounds {
+    return { limits, readings: listEvidence(this.s, this.c, hand), lnOdds };
   }
 
   private ruleLimits(rule: Rule): Record<string, number> {

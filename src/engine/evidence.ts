@@ -1,32 +1,38 @@
 import type { EvidenceReading } from './events.js';
-import { EVIDENCE, EVIDENCE_MASK, EVIDENCE_NEWEST, INDEX } from './state.js';
+import { EVIDENCE, EVIDENCE_MASK, EVIDENCE_NEWEST, INDEX, TIME, VALUE } from './state.js';
 
 const FEWEST = 32; // readings that evidence keeps at least
 
 /*
- * Evidence: the newest readings of a channel as they came, with their times, those off the scale too. As many as the
- * longest pattern looks back, so that every verdict recomputes. A ring of times and values by turns.
+ * Evidence: the newest readings that took part (those off the scale take part in nothing), as many as the longest pattern
+ * looks back, so that every verdict recomputes. Three rings one after the other among the doubles: of times, of values,
+ * of indices. The quiet path fills them.
  */
 
-/** Doubles that the ring takes. @param longest readings that the longest pattern spans */
+const kept = (longest: number): number => 2 ** Math.ceil(Math.log2(Math.max(FEWEST, longest))); // a place is then a mask and no division
+
+/** Doubles that the rings take. @param longest readings that the longest pattern spans */
 export function evidenceRoom(longest: number): number {
-  return 2 * 2 ** Math.ceil(Math.log2(Math.max(FEWEST, longest))); // a place is then a mask and no division
+  return 3 * kept(longest);
 }
 
-/** Lays out the ring. @param start its first place among the doubles */
-export function layEvidence(c: Int32Array, start: number, longest: number): void {
+/** Lays out the rings. @param start their first place among the doubles */
+export function layEvidence(s: Float64Array, c: Int32Array, start: number, longest: number): void {
+  s.fill(NaN, start, start + evidenceRoom(longest));
   c[EVIDENCE] = start;
-  c[EVIDENCE_MASK] = evidenceRoom(longest) - 1;
-  c[EVIDENCE_NEWEST] = -2;
+  c[EVIDENCE_MASK] = kept(longest) - 1;
+  c[EVIDENCE_NEWEST] = -1;
 }
 
-/** The newest readings, oldest first. */
-export function listEvidence(s: Float64Array, c: Int32Array): EvidenceReading[] {
-  const mask = c[EVIDENCE_MASK]!;
-  const held = Math.min(s[INDEX]! + 1, (mask + 1) / 2);
-  return Array.from({ length: held }, (_, i) => {
-    const age = held - 1 - i;
-    const place = c[EVIDENCE]! + ((c[EVIDENCE_NEWEST]! - 2 * age) & mask);
-    return { index: s[INDEX]! - age, time: s[place]!, value: s[place + 1]! };
-  });
+/** The newest readings that took part, oldest first, and the one at hand in any case if `hand` asks for it. */
+export function listEvidence(s: Float64Array, c: Int32Array, hand: boolean): EvidenceReading[] {
+  const room = c[EVIDENCE_MASK]! + 1;
+  const readings: EvidenceReading[] = [];
+  for (let age = room - 1; age >= 0; age--) {
+    const place = c[EVIDENCE]! + ((c[EVIDENCE_NEWEST]! - age) & c[EVIDENCE_MASK]!);
+    const index = s[place + 2 * room]!;
+    if (index >= 0) readings.push({ index, time: s[place]!, value: s[place + room]! });
+  }
+  if (hand && readings.at(-1)?.index !== s[INDEX]) readings.push({ index: s[INDEX]!, time: s[TIME]!, value: s[VALUE]! });
+  return readings;
 }

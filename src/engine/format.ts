@@ -47,8 +47,8 @@ export function groups(n: number): string {
 export function formatDuration(ms: number): string {
   if (!Number.isFinite(ms)) return 'an unknown time';
   const seconds = Math.abs(ms) / 1000;
-  if (seconds < 1) return `${Math.round(seconds * 1000)} ms`;
-  if (seconds < 60) return `${trim(seconds.toFixed(1))} s`;
+  if (seconds < 0.9995) return `${Math.round(seconds * 1000)} ms`;
+  if (seconds < 59.95) return `${trim(seconds.toFixed(1))} s`;
   const s = Math.round(seconds);
   if (s < 3600) return pair(Math.floor(s / 60), 'min', s % 60, 's');
   if (s < 86_400) return pair(Math.floor(s / 3600), 'h', Math.floor((s % 3600) / 60), 'min');

@@ -1,7 +1,9 @@
 import { between, upperTail } from '../stats/normal.js';
 import { LAST_VALUE, LEAST_STEP, REPEATS, REPEATS_NEEDED, STEP, STEPS_SEEN } from './state.js';
 
-const FEWEST = 4; // repeats that are never too few to be chance
+/** Fewer repeats never count as frozen, however unlikely. */
+export const FEWEST_REPEATS = 4;
+
 const STEPS = 20; // steps between unlike readings after which the least of them stands for the resolution
 const NEVER = 2 ** 31 - 1;
 
@@ -48,5 +50,5 @@ export function logChance(resolution: number, sigma: number): number {
 /** Repeats m, at least 4, at which p^m falls below the odds; beyond all counting where every reading repeats. */
 export function repeatsNeeded(lnChance: number, odds: number): number {
   if (!(lnChance < 0)) return NEVER;
-  return Math.max(FEWEST, Math.min(NEVER, Math.floor(Math.log(odds) / lnChance) + 1));
+  return Math.max(FEWEST_REPEATS, Math.min(NEVER, Math.floor(Math.log(odds) / lnChance) + 1));
 }

@@ -39,20 +39,23 @@ const BLOCK = BLOCK_BIT;
 export function quietPath(s: Float64Array, c: Int32Array, histogram: Uint32Array): number {
   const value = s[VALUE]!;
   const time = s[TIME]!;
-  s[INDEX]!++;
+  const index = s[INDEX]! + 1;
+  s[INDEX] = index;
   const newest = s[LAST_TIME]!;
   if (time > newest || newest !== newest) s[LAST_TIME] = time;
-
-  // Evidence: the reading as it came.
-  const turn = (c[EVIDENCE_NEWEST]! + 2) & c[EVIDENCE_MASK]!;
-  const place = c[EVIDENCE]! + turn;
-  c[EVIDENCE_NEWEST] = turn;
-  s[place] = time;
-  s[place + 1] = value;
 
   // A reading that measures nothing takes part in no statistics, as a missing reading takes part in none.
   if (!(value >= s[RANGE_LOW]! && value <= s[RANGE_HIGH]!)) return OFF_SCALE;
   let found = value > s[TOLERANCE_HIGH]! || value < s[TOLERANCE_LOW]! ? OUTSIDE : 0;
+
+  // Evidence: see evidence.ts.
+  const turn = (c[EVIDENCE_NEWEST]! + 1) & c[EVIDENCE_MASK]!;
+  const room = c[EVIDENCE_MASK]! + 1;
+  const place = c[EVIDENCE]! + turn;
+  c[EVIDENCE_NEWEST] = turn;
+  s[place] = time;
+  s[place + room] = value;
+  s[place + room + room] = index;
 
   // The rolling window: see rollingWindow.ts.
   const at = c[NEXT]!;

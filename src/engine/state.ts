@@ -47,7 +47,7 @@ export const ANCHOR = 27;
 /** Window: readings held, n, and 1 / n(n - 1). */
 export const COUNT = 28;
 export const SCALE = 29;
-/** Window: its readings; the ring of the evidence begins after them. */
+/** Window: its readings; the rings of the evidence begin after them. */
 export const READINGS = 30;
 
 // Integers.
@@ -76,7 +76,7 @@ export const SEEN = 15;
 export const WATCHES_REPEATS = 16;
 export const REPEATS = 17;
 export const REPEATS_NEEDED = 18;
-/** Evidence: first place of its ring among the doubles; mask of places; place of the newest. */
+/** Evidence: first place of its rings among the doubles; mask of places; place of the newest. */
 export const EVIDENCE = 19;
 export const EVIDENCE_MASK = 20;
 export const EVIDENCE_NEWEST = 21;

@@ -23,7 +23,7 @@ describe('a band', () => {
     expect(of(events, 'band')).toHaveLength(1);
     expect(band!.centre).toBeCloseTo(50.81, 12);
     expect(band!.sigma).toBeCloseTo(sd / 0.9726592741215883, 10);
-    expect(band!.centreUncertainty).toBeCloseTo(band!.sigma / Math.sqrt(10), 12);
+    expect(band!.centreUncertainty).toBeCloseTo(sd / Math.sqrt(10), 12);
     expect(band).toMatchObject({ id: 'learned@9', n: 10, origin: 'learned' });
     feed(channel, Array<number>(200).fill(60), 10);
     expect(channel.band).toBe(band);
