@@ -16,8 +16,7 @@ export function drawFar(r: Raster, t: Theme, view: StandView, row: number, heigh
   const alarmed = view.channels.filter(({ state }) => state === 'alarm');
   const settling = view.channels.filter(({ state }) => state === 'settling' || state === 'waiting');
   const rest = view.channels.filter(({ state }) => state === 'normal');
-  const words = alarmed.length > 0 ? `${alarmed.length} IN ALARM` : settling.length > 0 ? 'SETTLING' : view.channels.length > 0 ? 'ALL WELL' : 'NO CHANNELS';
-  const attrs = alarmed.length > 0 ? t.alarm : t.plain;
+  const [words, attrs] = farWords(t, view, alarmed.length, settling.length);
   const bottom = row + height;
   const scale = Math.max(1, Math.min(Math.floor(r.width / (words.length * 8)), Math.floor(height / 12)));
   let at = row + 1;
@@ -27,6 +26,16 @@ export function drawFar(r: Raster, t: Theme, view: StandView, row: number, heigh
     at += banner(r, channel.toUpperCase(), at, 1, t.strong) + 1;
   }
   drawStates(r, t, view, [...alarmed, ...settling, ...rest], at, bottom - at);
+}
+
+/** The one thing to know from across the room. "All well" is said only while nothing at all is amiss. */
+function farWords(t: Theme, { channels, sources, logTrouble }: StandView, alarmed: number, settling: number): readonly [words: string, attrs: number] {
+  if (alarmed > 0) return [`${alarmed} IN ALARM`, t.alarm];
+  if (logTrouble !== null) return ['LOG TROUBLE', t.alarm];
+  if (sources.some(({ phase }) => phase === 'lost')) return ['SOURCE LOST', t.caution];
+  if (channels.length === 0) return ['NO CHANNELS', t.plain];
+  if (sources.length > 0 && sources.every(({ phase }) => phase === 'ended' || phase === 'stopped')) return ['ENDED', t.note];
+  return settling > 0 ? ['SETTLING', t.plain] : ['ALL WELL', t.plain];
 }
 
 const COLUMN = 38;
@@ -50,11 +59,16 @@ function drawStates(r: Raster, t: Theme, view: StandView, channels: readonly Cha
   if (shown < channels.length) r.text(2 + (shown % across) * COLUMN, row + height - 1, `and ${channels.length - shown} more`, t.faint);
 }
 
-/** @returns rows taken */
+/** Large letters, closer or narrower where there are many; an end that still has no room is left out with dots. @returns rows taken */
 function banner(r: Raster, words: string, row: number, scale: number, attrs: number): number {
-  const wide = 2 * scale;
-  const letters = Array.from(words).slice(0, Math.max(1, Math.floor(r.width / (4 * wide))));
-  let left = Math.max(0, Math.floor((r.width - letters.length * 4 * wide) / 2));
+  const all = Array.from(words);
+  const fits = (wide: number, gap: number): boolean => all.length * (3 * wide + gap) - gap <= r.width;
+  const wide = fits(2 * scale, scale) ? 2 * scale : scale;
+  const gap = fits(wide, wide) ? wide : scale;
+  const pitch = 3 * wide + gap;
+  const room = Math.max(1, Math.floor((r.width + gap) / pitch));
+  const letters = all.length <= room ? all : [...all.slice(0, Math.max(0, room - 3)), '.', '.', '.'];
+  let left = Math.max(0, Math.floor((r.width - letters.length * pitch + gap) / 2));
   for (const letter of letters) {
     const shape = FONT[letter] ?? FONT['-']!;
     for (let y = 0; y < 5; y++)
@@ -62,7 +76,7 @@ function banner(r: Raster, words: string, row: number, scale: number, attrs: num
         if (!((Number(shape[y]) >> (2 - x)) & 1)) continue;
         for (let dy = 0; dy < scale; dy++) for (let dx = 0; dx < wide; dx++) r.put(left + x * wide + dx, row + y * scale + dy, '█', attrs);
       }
-    left += 4 * wide;
+    left += pitch;
   }
   return 5 * scale;
 }

@@ -32,8 +32,8 @@ export function drawFrame(r: Raster, t: Theme, view: StandView, ui: Ui): Layout 
     const channel = view.channels[selected];
     if (channel) {
       drawTitle(r, t, view, ui, places, selected);
-      drawPicture(r, t, channel, ...places.picture, ui.span);
-      if (places.spread[1] > 0) drawSpread(r, t, channel, ...places.spread, ui.span);
+      const gutter = drawPicture(r, t, channel, ...places.picture, ui.span);
+      if (places.spread[1] > 0) drawSpread(r, t, channel, ...places.spread, ui.span, gutter);
     }
     if (ui.figures && channel) drawFigures(r, t, channel, ...places.lower);
     else drawAlarms(r, t, view, ...places.lower);

@@ -28,5 +28,6 @@ export function drawHelp(r: Raster, t: Theme): void {
   r.wipe(left, top, width, height);
   for (let x = left; x <= right; x++) for (const y of [top, bottom]) r.put(x, y, '─', t.faint);
   for (let y = top + 1; y < bottom; y++) for (const x of [left, right]) r.put(x, y, '│', t.faint);
+  for (const [x, y, corner] of [[left, top, '┌'], [right, top, '┐'], [left, bottom, '└'], [right, bottom, '┘']] as const) r.put(x, y, corner, t.faint);
   LINES.slice(0, height - 2).forEach((line, i) => r.text(left + 2, top + 1 + i, line, i === 0 ? t.strong : t.plain, width - 4));
 }

@@ -31,7 +31,7 @@ export function drawAlarms(r: Raster, t: Theme, view: StandView, row: number, he
 /** The sentence, with the odds where it does not tell them, and how often the alarm has been signalled. */
 function words({ sentence, odds, signals, clearedAt }: AlarmView): string {
   const chance = odds === null || sentence.includes('1 in ') ? '' : ` (${formatOdds(odds)})`;
-  return `${sentence}${chance}${clearedAt === null && signals > 1 ? ` ${signals} signals.` : ''}`;
+  return `${chance === '' ? sentence : `${sentence.replace(/\.$/, '')}${chance}.`}${clearedAt === null && signals > 1 ? ` ${signals} signals.` : ''}`;
 }
 
 const KEPT = '\u00a0'; // a blank that no line is broken at

@@ -5,7 +5,8 @@ import type { ChannelView } from './model.js';
 import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
 
-export const GUTTER = 10; // columns for the labels of the value axis
+export const GUTTER = 10; // columns for the labels of the value axis, at least
+const WIDEST_GUTTER = 20;
 
 /** Columns of the histogram at the right of the picture. */
 export const histogramWidth = (width: number): number => Math.max(14, Math.min(40, Math.floor((width - GUTTER) / 5)));
@@ -22,22 +23,27 @@ const DATA = 6;
  * One picture of a channel: the trend, and at its right end, on the same value axis, the histogram of the readings shown
  * turned on its side with the normal curve of the band; centre line, zones and limits run through both.
  * @param span readings shown
+ * @returns columns that the labels at its left take, for what is drawn below it
  */
-export function drawPicture(r: Raster, t: Theme, c: ChannelView, row: number, height: number, span: number): void {
+export function drawPicture(r: Raster, t: Theme, c: ChannelView, row: number, height: number, span: number): number {
   const top = row * 4;
   const axis = valueAxis(c, span, height * 4);
   if (!axis) {
     r.text(GUTTER, row + (height >> 1), c.index < 0 && !c.stale ? 'Nothing has come from this channel yet.' : 'No reading that could be drawn.', t.faint);
-    return;
+    return GUTTER;
   }
   const aside = histogramWidth(r.width);
-  const left = GUTTER * 2;
+  const labels = axisLabels(t, c, axis);
+  // in steps of two, so that a label which gains or loses a digit does not move the picture each time
+  const gutter = Math.min(WIDEST_GUTTER, 2 * Math.ceil(labels.reduce((widest, { text }) => Math.max(widest, text.length + 1), GUTTER) / 2));
+  const left = gutter * 2;
   const right = r.width * 2 - 1;
   const split = (r.width - aside) * 2;
   drawLines(r, t, c, axis, top, left, right);
   drawTrend(r, t, c, axis, top, left, split - 3, span, height);
   drawHistogram(r, t, c, axis, top, split, right, span, height);
-  drawLabels(r, t, c, axis, row, height);
+  drawLabels(r, labels, axis, row, height, gutter - 1);
+  return gutter;
 }
 
 function drawLines(r: Raster, t: Theme, { band, tolerance }: ChannelView, axis: Axis, top: number, left: number, right: number): void {
@@ -53,8 +59,15 @@ function drawLines(r: Raster, t: Theme, { band, tolerance }: ChannelView, axis: 
   level(band.high, LIMIT, 4, 1, t.plain);
 }
 
-/** Dots of the newest `span` readings: the newest at the right edge, each `step` to the left one older. */
-export const dotColumn = (age: number, span: number, left: number, right: number): number => right - Math.round((age * (right - left)) / Math.max(1, span - 1));
+/**
+ * Dot column of a reading: the newest at the right edge, the one `span` before it at the left. Columns are counted from the
+ * channel's first reading, so that the same readings always share one: the trend moves by whole columns and keeps its shape.
+ * @param newest index of the newest reading in the channel @param age how many readings before it
+ */
+export function dotColumn(newest: number, age: number, span: number, left: number, right: number): number {
+  const perReading = (right - left) / Math.max(1, span - 1);
+  return Math.max(left, right - (Math.floor(newest * perReading) - Math.floor((newest - age) * perReading)));
+}
 
 /**
  * Least and greatest reading of each dot column, joined from column to column: as true as drawing every reading, at a
@@ -78,7 +91,7 @@ function drawTrend(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: number,
       [column, before] = [-1, -1]; // a gap
       continue;
     }
-    const at = dotColumn(trendLength - 1 - i, span, left, right);
+    const at = dotColumn(c.index, trendLength - 1 - i, span, left, right);
     if (!r.fine) r.put(at >> 1, inside(axis.y(value)) >> 2, '•', t.plain, DATA);
     else if (at !== column) {
       flush();
@@ -131,23 +144,31 @@ function drawHistogram(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: num
   }
 }
 
-function drawLabels(r: Raster, t: Theme, c: ChannelView, axis: Axis, row: number, height: number): void {
-  const { band, tolerance } = c;
-  const step = (axis.high - axis.low) / 200;
+interface Label {
+  readonly value: number;
+  readonly text: string;
+  readonly attrs: number;
+}
+
+/** What the axis says, the weightiest first. */
+function axisLabels(t: Theme, { band, tolerance, resolution }: ChannelView, { low, high }: Axis): Label[] {
+  const sigma = band?.sigma ?? (high - low) / 10;
+  const label = (value: number, attrs: number, mark = ''): Label => ({ value, attrs, text: formatValue(value, sigma, resolution) + mark });
+  return [
+    ...(band ? [band.high, band.low, band.centre].map((value) => label(value, t.plain)) : []),
+    ...(tolerance ?? []).map((value) => label(value, t.faint, ' tol')),
+    label(high, t.faint),
+    label(low, t.faint),
+  ].filter(({ value }) => value >= low && value <= high);
+}
+
+/** Each label at its line, flush right; one that is too long is cut where its last digits are, and says so. */
+function drawLabels(r: Raster, labels: readonly Label[], axis: Axis, row: number, height: number, width: number): void {
   const taken = new Set<number>();
-  const label = (value: number, attrs: number, mark = ''): void => {
+  for (const { value, text, attrs } of labels) {
     const at = Math.max(0, Math.min(height - 1, axis.y(value) >> 2));
-    if (value < axis.low || value > axis.high || taken.has(at)) return;
+    if (taken.has(at)) continue;
     taken.add(at);
-    const text = formatValue(value, band?.sigma ?? step * 20, c.resolution) + mark;
-    r.text(0, row + at, text.padStart(GUTTER - 1).slice(-(GUTTER - 1)), attrs, GUTTER - 1);
-  };
-  if (band) {
-    label(band.high, t.plain);
-    label(band.low, t.plain);
-    label(band.centre, t.plain);
+    r.text(0, row + at, text.padStart(width), attrs, width);
   }
-  for (const line of tolerance ?? []) label(line, t.faint, ' tol');
-  label(axis.high, t.faint);
-  label(axis.low, t.faint);
 }

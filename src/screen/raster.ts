@@ -121,7 +121,7 @@ export class Raster {
     const words = this.kind === 'ascii' ? plainText(safe) : safe;
     const cut = words.length > room;
     const length = cut ? room : words.length;
-    for (let i = 0; i < length; i++) this.put(column + i, row, cut && i === length - 1 && room > 3 ? '…' : words[i]!, attrs);
+    for (let i = 0; i < length; i++) this.put(column + i, row, cut && i === length - 1 ? '…' : words[i]!, attrs);
     return column + length;
   }
 

@@ -1,6 +1,6 @@
 import { constants as files, closeSync, openSync, writeSync } from 'node:fs';
 import type { BlessedScreen } from './blessed.js';
-import { mute, watchTerminal } from './terminalGone.js';
+import { closeDeadTerminalsAtExit, mute, watchTerminal } from './terminalGone.js';
 
 /** Off: mouse, focus and paste modes, keypad; attributes, character set; cursor shown; main screen. Each does no harm where it was off. */
 export const RESET =
@@ -23,6 +23,7 @@ export function restoreOnEnd(
   onSignal: (signal: NodeJS.Signals) => void,
   onFatal: (error: unknown) => void,
 ): Restorer {
+  closeDeadTerminalsAtExit();
   let done = false;
   const restore = (): void => {
     if (done) return;

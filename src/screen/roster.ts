@@ -4,8 +4,8 @@ import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
 import type { Ui } from './ui.js';
 
-const REACH = 4; // sigmas to each side of the ruler's centre
 const SPARK = '▁▂▃▄▅▆▇█';
+const PER_COLUMN = 2; // readings
 
 /** Columns of a row. */
 interface Columns {
@@ -14,6 +14,8 @@ interface Columns {
   readonly value: number;
   readonly z: number;
   readonly ruler: number;
+  /** Sigmas to each side of the ruler's centre. */
+  readonly reach: number;
   /** Characters to a sigma. */
   readonly perSigma: number;
   readonly spark: number;
@@ -23,14 +25,20 @@ interface Columns {
 const NAME = 14;
 const VALUE_AND_UNIT = 15;
 
-function columns(width: number, longest: number): Columns {
-  const perSigma = width >= 110 ? 4 : 2;
+/** Sigmas that the rulers reach to: one number for all rows, so that they compare, and enough to hold the limits of a small budget. */
+function reachOf({ channels }: StandView): number {
+  const k = channels.reduce((widest, { band }) => (band ? Math.max(widest, band.k) : widest), 0);
+  return k < 4 ? 4 : k < 6 ? 6 : 8;
+}
+
+function columns(width: number, longest: number, reach: number): Columns {
+  const perSigma = width >= 110 ? (reach === 4 ? 4 : reach === 6 ? 3 : 2) : reach === 4 ? 2 : reach === 6 ? 1.5 : 1;
   const nameWidth = Math.max(8, Math.min(width >= 110 ? 28 : Math.max(8, width - 64), longest));
   const value = NAME + nameWidth + 1;
   const z = value + VALUE_AND_UNIT + 1;
   const ruler = z + 7;
-  const spark = ruler + 2 * REACH * perSigma + 3;
-  return { name: NAME, nameWidth, value, z, ruler, perSigma, spark, sparkWidth: Math.min(60, width - spark - 1) };
+  const spark = ruler + 2 * reach * perSigma + 3;
+  return { name: NAME, nameWidth, value, z, ruler, reach, perSigma, spark, sparkWidth: Math.min(60, width - spark - 1) };
 }
 
 /** State, name, value and place among its own sigmas of each channel: unlike quantities compare at a glance. */
@@ -40,7 +48,7 @@ export function drawRoster(r: Raster, t: Theme, view: StandView, ui: Ui, row: nu
     return;
   }
   const standing = standingByChannel(view);
-  const places = columns(r.width, view.channels.reduce((longest, { channel }) => Math.max(longest, channel.length), 0));
+  const places = columns(r.width, view.channels.reduce((longest, { channel }) => Math.max(longest, channel.length), 0), reachOf(view));
   for (let i = 0; i < height; i++) {
     const channel = view.channels[ui.first + i];
     if (channel) drawRow(r, t, channel, standing.get(channel.channel) ?? null, row + i, places, ui.first + i === selected);
@@ -89,37 +97,42 @@ export function stateMark(t: Theme, c: ChannelView, alarm: AlarmView | null): re
 }
 
 /** How far a band has been learned, in the ruler's place. */
-function drawProgress(r: Raster, t: Theme, [taken, needed]: readonly [number, number], row: number, { z, ruler, perSigma }: Columns): void {
+function drawProgress(r: Raster, t: Theme, [taken, needed]: readonly [number, number], row: number, { z, ruler, reach, perSigma }: Columns): void {
   const words = `${taken}/${needed}`;
   r.text(z, row, words.padStart(6), t.note, 11);
   const from = Math.max(ruler, z + words.length + 1);
-  const length = ruler + 2 * REACH * perSigma - from;
+  const length = ruler + 2 * reach * perSigma - from;
   const done = Math.round(length * Math.max(0, Math.min(1, taken / needed)));
   for (let i = 0; i <= length; i++) r.put(from + i, row, i <= done ? '━' : '·', i <= done ? t.note : t.faint);
 }
 
 /** A ruler in sigmas: centre and limits marked, and the newest reading on top. */
-function drawRuler(r: Raster, t: Theme, { band, z }: ChannelView, alarmed: boolean, row: number, { ruler, perSigma }: Columns): void {
-  const place = (sigmas: number): number => ruler + Math.round((Math.max(-REACH, Math.min(REACH, sigmas)) + REACH) * perSigma);
-  for (let sigmas = -REACH; sigmas <= REACH; sigmas++) r.put(place(sigmas), row, '·', t.faint, 1);
+function drawRuler(r: Raster, t: Theme, { band, z }: ChannelView, alarmed: boolean, row: number, { ruler, reach, perSigma }: Columns): void {
+  const place = (sigmas: number): number => ruler + Math.round((Math.max(-reach, Math.min(reach, sigmas)) + reach) * perSigma);
+  for (let sigmas = -reach; sigmas <= reach; sigmas += perSigma < 2 ? 2 : 1) r.put(place(sigmas), row, '·', t.faint, 1);
   r.put(place(0), row, '┊', t.faint, 2);
-  if (band && band.k <= REACH) for (const side of [-1, 1]) r.put(place(side * band.k), row, '│', t.faint, 2);
+  if (band && band.k <= reach) for (const side of [-1, 1]) r.put(place(side * band.k), row, '│', t.faint, 2);
   if (z === null || Number.isNaN(z)) return;
-  r.put(place(z), row, z > REACH ? '▸' : z < -REACH ? '◂' : '●', alarmed ? t.alarm : t.plain, 3);
+  r.put(place(z), row, z > reach ? '▸' : z < -reach ? '◂' : '●', alarmed ? t.alarm : t.plain, 3);
 }
 
-/** The newest readings in sigmas from -4 to 4; a column shows the one of its readings that lies farthest out. */
-function drawSpark(r: Raster, t: Theme, { band, trend, trendLength }: ChannelView, row: number, { spark, sparkWidth }: Columns): void {
+/**
+ * The newest readings in sigmas, as far as the ruler reaches; a column shows the one of its readings that lies farthest out.
+ * Columns are counted from the channel's first reading, so that they move but do not change.
+ */
+function drawSpark(r: Raster, t: Theme, { band, trend, trendLength, index }: ChannelView, row: number, { spark, sparkWidth, reach }: Columns): void {
   if (!band || sparkWidth < 5) return;
-  const each = 2;
-  const shown = Math.min(sparkWidth, Math.floor(trendLength / each));
-  for (let i = 0; i < shown; i++) {
+  const oldest = index - trendLength + 1;
+  const last = Math.floor(index / PER_COLUMN);
+  const first = Math.max(last - sparkWidth + 1, Math.ceil(oldest / PER_COLUMN));
+  for (let column = first; column <= last; column++) {
     let farthest = 0;
-    for (let j = 0; j < each; j++) {
-      const z = (trend[trendLength - (shown - i) * each + j]! - band.centre) / band.sigma;
+    for (let i = column * PER_COLUMN; i < (column + 1) * PER_COLUMN && i <= index; i++) {
+      const z = (trend[i - oldest]! - band.centre) / band.sigma;
       if (Math.abs(z) > Math.abs(farthest)) farthest = z;
     }
-    const level = Math.max(0, Math.min(SPARK.length - 1, Math.floor(farthest + SPARK.length / 2)));
-    r.put(spark + i, row, SPARK[level]!, Math.abs(farthest) > band.k ? t.alarm : t.faint);
+    const half = SPARK.length / 2;
+    const level = Math.max(0, Math.min(SPARK.length - 1, Math.floor((farthest * half) / reach + half)));
+    r.put(spark + column - first, row, SPARK[level]!, Math.abs(farthest) > band.k ? t.alarm : t.faint);
   }
 }

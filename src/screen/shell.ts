@@ -3,10 +3,10 @@ import { UserError } from '../text/errors.js';
 import { clean } from '../text/clean.js';
 import { RasterCanvas } from './canvas.js';
 import { drawFrame } from './frame.js';
-import { holdView } from './hold.js';
+import { holdChannels, withHeld } from './hold.js';
 import { TokenInput } from './input.js';
 import type { Layout } from './layout.js';
-import type { StandView } from './model.js';
+import type { ChannelView, StandView } from './model.js';
 import { Raster } from './raster.js';
 import { restoreOnEnd } from './restore.js';
 import { openBlessed, terminalProfile } from './terminal.js';
@@ -60,7 +60,7 @@ export function openScreen(options: ScreenOptions): ScreenHandle {
   const raster = new Raster(profile.dots);
   const colours = theme(profile.colours);
   const ui = initialUi();
-  let heldView: StandView | null = null;
+  let held: ReadonlyMap<string, ChannelView> | null = null;
   let view = options.view();
   let places: Layout | null = null;
   let messageUntil = 0;
@@ -72,7 +72,8 @@ export function openScreen(options: ScreenOptions): ScreenHandle {
     if (!open || output.writableLength > 0) return; // a slow terminal is given fewer frames, never a queue
     try {
       if (ui.message && performance.now() > messageUntil) ui.message = null;
-      if (drawn) view = heldView ?? options.view(); // once a frame
+      if (drawn) view = options.view(); // once a frame
+      if (held) view = withHeld(view, held);
       drawn = true;
       const channel = view.channels[selectedIndex(view, ui)];
       if (channel) options.select(channel.channel);
@@ -117,11 +118,14 @@ export function openScreen(options: ScreenOptions): ScreenHandle {
     const action = KEYS[key.full] ?? KEYS[character ?? ''];
     if (action === undefined) return;
     act(ui, action, view, places?.roster[1] ?? 1);
-    if (action === 'hold') heldView = ui.held ? holdView(view) : null;
+    if (action === 'hold') held = ui.held ? holdChannels(view) : null;
     draw();
   });
   screen.on('mouse', (data: { action: string; y: number }) => {
-    if (data.action === 'wheelup' || data.action === 'wheeldown') act(ui, data.action === 'wheelup' ? 'up' : 'down', view, 1);
+    if (ui.help) {
+      if (data.action !== 'mousedown') return;
+      ui.help = false; // as any key does
+    } else if (data.action === 'wheelup' || data.action === 'wheeldown') act(ui, data.action === 'wheelup' ? 'up' : 'down', view, 1);
     else if (data.action === 'mousedown' && places && !ui.far && data.y >= places.roster[0] && data.y < places.roster[0] + places.roster[1])
       ui.selected = view.channels[ui.first + data.y - places.roster[0]]?.channel ?? ui.selected;
     else return;

@@ -1,3 +1,5 @@
+import { closeSync } from 'node:fs';
+import { isatty } from 'node:tty';
 import type { BlessedScreen } from './blessed.js';
 
 /**
@@ -26,4 +28,28 @@ export function watchTerminal(output: NodeJS.WritableStream, onGone: () => void)
 /** Nothing more is written by blessed, which would write its farewell to a terminal that has gone. */
 export function mute(screen: BlessedScreen): void {
   screen.program._owrite = screen.program.write = () => true;
+}
+
+/**
+ * At its end Node gives standard input, output and error the terminal modes back that they began with, and aborts with a core
+ * dump where one of them is a terminal that has hung up (`ResetStdio`: an assertion on EIO of tcsetattr). Those that were
+ * terminals and are none any more are closed just before, which it passes over. Asked for once in a process.
+ */
+export function closeDeadTerminalsAtExit(): void {
+  if (asked) return;
+  asked = true;
+  const terminals = [0, 1, 2].filter((fd) => isatty(fd));
+  process.once('exit', () => {
+    for (const fd of terminals) if (!isatty(fd)) closeQuietly(fd);
+  });
+}
+
+let asked = false;
+
+function closeQuietly(fd: number): void {
+  try {
+    closeSync(fd);
+  } catch {
+    // closed already
+  }
 }

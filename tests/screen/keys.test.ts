@@ -69,6 +69,15 @@ describe('help', () => {
     expect(shown.tty.text()).not.toContain('kilter: keys and signs');
   });
 
+  it('a click closes it and chooses nothing, the wheel passes it by', async () => {
+    shown = await show(inventedStand());
+    await shown.type('?', '\x1b[<65;5;9M');
+    expect(shown.tty.text()).toContain('kilter: keys and signs');
+    await shown.type('\x1b[<0;20;5M\x1b[<0;20;5m');
+    expect(shown.tty.text()).not.toContain('kilter: keys and signs');
+    expect(chosen()).toContain('coolant-out');
+  });
+
   it('Ctrl-C quits even then', async () => {
     shown = await show(inventedStand());
     await shown.type('?', '\x03');
@@ -76,7 +85,7 @@ describe('help', () => {
   });
 });
 
-it('space holds the picture, the stand goes on, space lets it run', async () => {
+it('space holds the picture, the stand and its clock go on, space lets it run', async () => {
   const base = inventedStand();
   let second = 0;
   shown = await show(() => {
@@ -84,16 +93,29 @@ it('space holds the picture, the stand goes on, space lets it run', async () => 
     return { ...base, now: base.now + 1000 * second++ };
   });
   const clock = (): string => shown.tty.lines()[0]!.slice(-12);
+  const picture = (): string[] => shown.tty.lines().slice(1);
   await shown.type(' ');
-  const held = [clock(), shown.tty.text()];
+  const held = [clock(), picture()];
   base.channels[0]!.trend.fill(82.7);
   await shown.frame();
   await shown.frame();
-  expect([clock(), shown.tty.text()]).toEqual(held);
+  expect(picture()).toEqual(held[1]);
+  expect(clock()).not.toBe(held[0]);
   expect(shown.tty.lines().at(-1)).toContain('held');
   await shown.type(' ');
-  expect(clock()).not.toBe(held[0]);
+  expect(picture()).not.toEqual(held[1]);
   expect(shown.tty.text()).not.toContain('held');
+});
+
+it('who holds the picture is told of an alarm all the same', async () => {
+  let view = inventedStand();
+  shown = await show(() => view);
+  await shown.type(' ');
+  view = troubledStand();
+  await shown.frame();
+  expect(shown.tty.lines()[0]).toContain('■ 2 alarms stand on 1 of 6 channels');
+  expect(shown.tty.text()).toMatch(/■ ALARM high flow +41\.3 L\/min/); // its value is the held one
+  expect(shown.tty.text()).toContain('flow is above its control limit');
 });
 
 it('+ and - change how many readings the trend shows', async () => {

@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { drawPicture, GUTTER, histogramWidth } from '../../src/screen/picture.js';
+import { drawPicture, histogramWidth } from '../../src/screen/picture.js';
 import { Raster } from '../../src/screen/raster.js';
 import { theme } from '../../src/screen/theme.js';
 import type { ChannelView } from '../../src/screen/model.js';
@@ -24,12 +24,12 @@ function filledRows(r: Raster, from: number, to: number, share: number): number[
   return rows;
 }
 
-function picture(c: ChannelView, width: number, height: number): Raster {
+/** The picture, and the columns of its labels. */
+function picture(c: ChannelView, width: number, height: number): [Raster, number] {
   const r = new Raster('braille');
   r.resize(width, height);
   r.clear();
-  drawPicture(r, theme(256), c, 0, height, 120);
-  return r;
+  return [r, drawPicture(r, theme(256), c, 0, height, 120)];
 }
 
 const CENTRES = fc.double({ min: -1e6, max: 1e6, noNaN: true });
@@ -42,9 +42,9 @@ describe('trend and histogram share one value axis', () => {
       fc.property(CENTRES, SIGMAS, SIZES, fc.double({ min: -8, max: 8, noNaN: true }), (centre, sigma, [width, height], z) => {
         const constant = new Float64Array(200).fill(centre);
         constant[0] = centre + z * sigma; // one reading far out stretches the axis of both
-        const r = picture(channel(0, { band: band(centre, sigma), trend: constant, trendLength: 120, resolution: null, tolerance: null }), width, height);
+        const [r, gutter] = picture(channel(0, { band: band(centre, sigma), trend: constant, trendLength: 120, resolution: null, tolerance: null }), width, height);
         const split = width - histogramWidth(width);
-        const trend = filledRows(r, GUTTER + 2, split - 4, 0.99);
+        const trend = filledRows(r, gutter + 2, split - 4, 0.99);
         const histogram = filledRows(r, split + 2, width - 1, 0.99);
         const both = trend.filter((row) => histogram.includes(row));
         expect(both.length).toBeGreaterThanOrEqual(3); // both limits, and the centre
@@ -63,9 +63,9 @@ describe('trend and histogram share one value axis', () => {
       fc.property(SIZES, fc.double({ min: -2.5, max: 2.5, noNaN: true }), ([width, height], z) => {
         const [centre, sigma] = [82.4, 0.12];
         const trend = new Float64Array(200).fill(centre + z * sigma);
-        const r = picture(channel(0, { band: band(centre, sigma), trend, trendLength: 120, resolution: null }), width, height);
+        const [r, gutter] = picture(channel(0, { band: band(centre, sigma), trend, trendLength: 120, resolution: null }), width, height);
         const split = width - histogramWidth(width);
-        const rows = filledRows(r, GUTTER + 2, split - 4, 1).filter((row) => filledRows(r, split + 2, width - 2, 1).includes(row));
+        const rows = filledRows(r, gutter + 2, split - 4, 1).filter((row) => filledRows(r, split + 2, width - 2, 1).includes(row));
         const expected = rows.find((row) => filledRows(r, split + 2, width - 2, 0.5).includes(row));
         expect(expected).toBeDefined();
       }),
@@ -74,9 +74,9 @@ describe('trend and histogram share one value axis', () => {
   });
 
   it('each limit has its label, in units, at its line', () => {
-    const r = picture(channel(0), 80, 12);
-    const label = (row: number): string => Array.from({ length: GUTTER }, (_, x) => r.glyph(row * 80 + x)).join('').trim();
-    const lines = filledRows(r, GUTTER + 1, 30, 0.99).map((row) => label(row >> 2));
+    const [r, gutter] = picture(channel(0), 80, 12);
+    const label = (row: number): string => Array.from({ length: gutter }, (_, x) => r.glyph(row * 80 + x)).join('').trim();
+    const lines = filledRows(r, gutter + 1, 30, 0.99).map((row) => label(row >> 2));
     expect(lines).toContain('82.76');
     expect(lines).toContain('82.04');
   });
