@@ -49,7 +49,7 @@ function channelFaults(path: Path, channel: ChannelEntry, { sources, broken }: P
   else if (!broken.has(sourceName)) {
     const names = [...Object.keys(sources), ...broken];
     const near = nearest(sourceName, names);
-    fault([...path, 'from'], `There is no source '${clean(sourceName, 60)}'.`, near ? `Did you mean '${near}'?` : names.length > 0 ? `There are: ${clean(names.join(', '), 200)}.` : null);
+    fault([...path, 'from'], `There is no source '${clean(sourceName, 60)}'.`, near ? `Did you mean '${clean(near, 80)}'?` : names.length > 0 ? `There are: ${clean(names.join(', '), 200)}.` : null);
   }
   for (const key of ['value', 'time', 'sequence'] as const) pointerFault([...path, key], channel[key], fault);
   bandFaults(path, channel, fault);

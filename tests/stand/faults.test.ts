@@ -107,6 +107,8 @@ describe('a fault in a stand file is told with its place and the mend', () => {
   it('hostile names reach the message cleaned', () => {
     const [fault] = faultsOf(GOOD.replace('    unit: L/min', '    "\\e[2Junit": L/min'));
     expect(fault!.what).toContain('·[2Junit');
+    const [, lost] = faultsOf(GOOD.replace('  logger:', '  "log\\eger":'));
+    expect(lost).toMatchObject({ what: "There is no source 'logger'.", mend: "Did you mean 'log·ger'?" });
   });
 
   it.each([
