@@ -5,7 +5,7 @@ import { kilter, sleep, standIn, type Running } from './kilter.js';
 const STAND = `
 stand: Bench supply
 watch: {limits: textbook}
-log: {file: LOG}
+log: {file: LOG, maxSize: 1 GB}
 sources:
   pipe: {stdin: true, lines: csv, columns: [a, b]}
 channels:
