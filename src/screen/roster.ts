@@ -22,6 +22,7 @@ interface Columns {
   readonly sparkWidth: number;
 }
 
+const SCALES = [4, 3, 2, 1.5, 1, 0.75, 0.5] as const; // characters to a sigma, with which every second sigma has a whole place or nearly so
 const NAME = 14;
 const VALUE_AND_UNIT = 15;
 
@@ -32,11 +33,12 @@ function reachOf({ channels }: StandView): number {
 }
 
 function columns(width: number, longest: number, reach: number): Columns {
-  const perSigma = width >= 110 ? (reach === 4 ? 4 : reach === 6 ? 3 : 2) : reach === 4 ? 2 : reach === 6 ? 1.5 : 1;
-  const nameWidth = Math.max(8, Math.min(width >= 110 ? 28 : Math.max(8, width - 64), longest));
+  const nameWidth = Math.max(8, Math.min(28, width - 57, longest)); // whole names before the spark, but not before the ruler
   const value = NAME + nameWidth + 1;
   const z = value + VALUE_AND_UNIT + 1;
   const ruler = z + 7;
+  const room = Math.min(width >= 110 ? 36 : 18, width - ruler - 1);
+  const perSigma = SCALES.find((scale) => 2 * reach * scale <= room) ?? SCALES.at(-1)!;
   const spark = ruler + 2 * reach * perSigma + 3;
   return { name: NAME, nameWidth, value, z, ruler, reach, perSigma, spark, sparkWidth: Math.min(60, width - spark - 1) };
 }

@@ -3,7 +3,7 @@ import ContribLine from 'blessed-contrib/lib/widget/charts/line.js';
 import type { BlessedScreen } from '../../src/screen/blessed.js';
 import { RasterCanvas } from '../../src/screen/canvas.js';
 import { drawFrame } from '../../src/screen/frame.js';
-import type { StandView } from '../../src/screen/model.js';
+import type { ChannelView, StandView } from '../../src/screen/model.js';
 import { Raster } from '../../src/screen/raster.js';
 import { openBlessed, terminalProfile } from '../../src/screen/terminal.js';
 import { theme } from '../../src/screen/theme.js';
@@ -99,8 +99,11 @@ function measure(width: number, height: number, start: (screen: BlessedScreen) =
   return { ms: best, bytes: bytes / (2 * FRAMES) };
 }
 
+/** One reading more on each channel: the oldest comes again. */
 function scroll({ channels }: StandView): void {
-  for (const { trend, trendLength } of channels) {
+  for (const channel of channels as readonly (ChannelView & { index: number })[]) {
+    const { trend, trendLength } = channel;
+    channel.index++;
     const [first] = trend;
     trend.copyWithin(0, 1, trendLength);
     trend[trendLength - 1] = first!;

@@ -64,17 +64,33 @@ it('a unit that has no room ends in an ellipsis: half a unit is another one', ()
   expect(row).toMatch(/12345678\.25 \S*…/);
 });
 
-describe('the rulers of the roster hold the limits, however far out a small budget sets them', () => {
-  it.each([[3, 80], [3, 200], [4.9, 80], [5.4, 120], [5.99, 80], [6.7, 80], [7.5, 200]])('k = %d at %i columns', (k, width) => {
+describe('the rulers of the roster hold the limits', () => {
+  const rows = (k: number, width: number, name = 'flow'): string[] => {
     const r = raster(width, 3);
-    const c = channel(0, { band: band(82.4, 0.12, { k, low: 82.4 - k * 0.12, high: 82.4 + k * 0.12 }), z: 0.05 });
+    const c = channel(0, { channel: name, band: band(82.4, 0.12, { k, low: 82.4 - k * 0.12, high: 82.4 + k * 0.12 }), z: 0.05 });
     drawRoster(r, theme(256), inventedStand({ channels: [c, channel(1, { z: k - 0.02 }), channel(2, { z: -9 })] }), initialUi(), 0, 3, 0);
-    const row = text(r, 0);
-    const [low, high] = [row.indexOf('│'), row.lastIndexOf('│')];
+    return [0, 1, 2].map((row) => text(r, row));
+  };
+
+  it.each([[3, 80], [3, 200], [4.9, 80], [5.4, 120], [5.99, 80], [6.7, 80], [7.5, 200]])('however far out a small budget sets them: k = %d at %i columns', (k, width) => {
+    const [first, second, third] = rows(k, width) as [string, string, string];
+    const [low, high] = [first.indexOf('│'), first.lastIndexOf('│')];
     expect(low).toBeGreaterThan(0);
     expect(high).toBeGreaterThan(low);
-    expect(Math.abs(row.indexOf('●') - (low + high) / 2)).toBeLessThanOrEqual(1); // the centre lies half way
-    expect(Math.abs(text(r, 1).indexOf('●') - high)).toBeLessThanOrEqual(1); // a row of another band has the same scale
-    expect(text(r, 2)).toContain('◂');
+    expect(Math.abs(first.indexOf('●') - (low + high) / 2)).toBeLessThanOrEqual(1); // the centre lies half way
+    expect(Math.abs(second.indexOf('●') - high)).toBeLessThanOrEqual(1); // a row of another band has the same scale
+    expect(third).toContain('◂');
+  });
+
+  it('at any width, with names of any length', () => {
+    fc.assert(
+      fc.property(fc.double({ min: 2, max: 7.9, noNaN: true }), fc.integer({ min: 60, max: 260 }), fc.integer({ min: 1, max: 40 }), (k, width, length) => {
+        const [first] = rows(k, width, 'n'.repeat(length)) as [string];
+        expect(first.split('│').length - 1).toBe(2);
+        expect(first.indexOf('│')).toBeLessThan(first.indexOf('●'));
+        expect(first.indexOf('●')).toBeLessThan(first.lastIndexOf('│'));
+      }),
+      { seed: 20310512 },
+    );
   });
 });

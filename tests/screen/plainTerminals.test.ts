@@ -5,6 +5,7 @@ import { channel, inventedStand, troubledStand } from './inventedStand.js';
 let shown: Shown;
 afterEach(() => shown.screen.close());
 
+const EVIL = 'a\x1b[2J\x9b2J\x9d0;title\x9c\x1b]52;c;YQ==\x07{red-fg}\u202eb\u0007';
 const COLOUR = /\x1b\[(?:\d+;)*(?:3[0-8]|4[0-8]|9[0-7]|10[0-7])(?:;\d+)*m/; // SGR (ECMA-48, and the aixterm range)
 
 it('with NO_COLOR no colour leaves, and the alarm is still plain to see', async () => {
@@ -36,8 +37,10 @@ it('the Linux console gets blocks, no braille and no mouse', async () => {
   expect(shown.tty.wire).not.toContain('\x1b[?1000h');
 });
 
-it('hostile names, units and sentences never reach the terminal raw', async () => {
-  const evil = 'a\x1b[2J\x9b2J\x9d0;title\x9c\x1b]52;c;YQ==\x07{red-fg}\u202eb\u0007';
+it.each([
+  ['escape sequences, C1 controls, tags and a change of direction', EVIL],
+  ['ten thousand characters of them', EVIL.repeat(Math.ceil(10_000 / EVIL.length))],
+])('names, units and sentences never reach the terminal raw: %s', async (_, evil) => {
   const base = inventedStand();
   const view = {
     ...base, stand: evil, notice: evil, logTrouble: null,
@@ -57,4 +60,14 @@ it('hostile names, units and sentences never reach the terminal raw', async () =
   expect(wire.split('\x1b[2J').length - 1).toBeLessThanOrEqual(2); // only those of blessed itself, when it takes the screen
   expect(shown.tty.text()).toContain('a·[2J');
   expect(shown.tty.text()).toContain('{red-fg}');
+});
+
+it('characters that are two cells wide, or none, move nothing that stands beside them', async () => {
+  const base = inventedStand();
+  shown = await show({ ...base, channels: [channel(0, { channel: '温度センサ', unit: '\u{1f600}' }), channel(1, { channel: 'e\u0301e\u0301\u200d\ufe0f' }), ...base.channels.slice(2)] });
+  const columns = shown.tty.lines().slice(1, 4).map((line) => line.indexOf('┊') - line.indexOf('normal'));
+  const zeros = shown.tty.lines().slice(1, 7).map((line) => line.search(/σ/));
+  expect(new Set(zeros).size).toBe(1);
+  expect(columns.every((column) => column === columns[0])).toBe(true);
+  expect(shown.tty.lines()[0]!.length).toBe(80);
 });

@@ -7,7 +7,7 @@ afterEach(() => shown.screen.close());
 
 const GREYS = new Set([-1, ...Array.from({ length: 24 }, (_, i) => 232 + i)]); // the grey ramp of the 256 palette (xterm)
 
-describe.each([[80, 24], [120, 40], [200, 60]])('at %i x %i', (columns, rows) => {
+describe.each([[80, 24], [100, 30], [120, 40], [200, 60]])('at %i x %i', (columns, rows) => {
   it('while all is well there is no colour but greys', async () => {
     shown = await show(inventedStand(), { columns, rows });
     expect([...shown.tty.colours()].filter((colour) => !GREYS.has(colour))).toEqual([]);

@@ -23,7 +23,9 @@ const pulse = setInterval(() => {
 }, 20);
 const turn = () => {
   frames++;
-  for (const { trend, trendLength } of stand.channels) {
+  for (const channel of stand.channels) {
+    const { trend, trendLength } = channel;
+    channel.index++;
     const first = trend[0];
     trend.copyWithin(0, 1, trendLength);
     trend[trendLength - 1] = first;
