@@ -121,10 +121,10 @@ export class Channel {
     return (c[ENABLED]! & SUPPLEMENTARY) === 0 ? found : found | supplementary(s, c);
   }
 
-  /** A reading that is not quiet, or found the window's block full. */
+  /** A reading that is not quiet, or after which the window must be attended to. */
   private attend(found: number): readonly EngineEvent[] {
     if ((found & OFF_SCALE_BIT) !== 0) return this.offScale();
-    if ((found & BLOCK_BIT) !== 0) this.window.closeBlock();
+    if ((found & BLOCK_BIT) !== 0) this.window.attend();
     if ((found & SETTLING_BIT) !== 0) return this.settle(found & OUTSIDE_BIT);
     const signals = found & ~BLOCK_BIT;
     return signals === 0 && this.standing.none ? NONE : this.report(signals);

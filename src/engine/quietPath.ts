@@ -6,7 +6,8 @@ import * as zones from './zoneRules.js';
 // Constants of this file, see state.ts.
 const { VALUE, Z, TIME, INDEX, LAST_TIME, RANGE_LOW, RANGE_HIGH, TOLERANCE_LOW, TOLERANCE_HIGH, CENTRE, SIGMA, PREDICTION } = state;
 const { EVIDENCE, EVIDENCE_MASK, EVIDENCE_NEWEST } = state;
-const { READINGS, NEXT, RECORD, RECORD_FIELDS, BLOCK_END, FULL, COUNT, SCALE, ANCHOR, S1, S2, SUM, LOST, LEAST, MOST } = state;
+const { READINGS, NEXT, BLOCK_END, FULL, COUNT, SCALE, ANCHOR, FLOOR, S1, S2, SUM, LOST } = state;
+const { FRESH_S1, FRESH_S2, FRESH_SUM, FRESH_LOST, FRESH_LEAST, FRESH_MOST } = state;
 const { LINE1, LINE2, LINE3, RECENT, ABOVE, BELOW, SIDE_RUN, ENABLED } = state;
 const { HAS_BAND, WATCHES_REPEATS, LAST_VALUE, STEP, REPEATS, REPEATS_NEEDED } = state;
 const { TWO, ONE, SIDE_BITS, KEEP, HOLDS } = zones;
@@ -34,7 +35,7 @@ const BLOCK = BLOCK_BIT;
  * that noise decides anew each time, and no processor foresees, becomes a bit).
  * @param s the doubles of the channel, c its integers: see state.ts
  * @returns 0, or the bits of the rules that signal, and FROZEN, OUTSIDE (the tolerance), OFF_SCALE, SETTLING (there is no
- *   band: the reading has not been judged), BLOCK (the window's block is full and must be closed)
+ *   band: the reading has not been judged), BLOCK (the window must be attended to)
  */
 export function quietPath(s: Float64Array, c: Int32Array, histogram: Uint32Array): number {
   const value = s[VALUE]!;
@@ -57,49 +58,71 @@ export function quietPath(s: Float64Array, c: Int32Array, histogram: Uint32Array
   s[place + room] = value;
   s[place + room + room] = index;
 
-  // The rolling window: see rollingWindow.ts.
+  // The rolling window: see rollingWindow.ts. Sums are compensated by two-sum (Knuth, The Art of Computer Programming 2, 4.2.2).
   const at = c[NEXT]!;
   const next = at + 1;
+  const anchor = s[ANCHOR]!;
+  const d = value - anchor;
+  let s1 = s[S1]! + d;
+  let s2 = s[S2]! + d * d;
+  const before = s[SUM]!;
+  let sum = before + value;
+  let part = sum - before;
+  let lost = s[LOST]! + (before - (sum - part) + (value - part));
   if (c[FULL] === 0) {
     s[COUNT] = next;
     s[SCALE] = 1 / (next * at);
+  } else {
+    const oldest = s[READINGS + at]!;
+    const gone = oldest - anchor;
+    s1 -= gone;
+    s2 -= gone * gone;
+    const rest = sum - oldest;
+    part = rest - sum;
+    lost += sum - (rest - part) - (oldest + part);
+    sum = rest;
   }
   s[READINGS + at] = value;
-  const d = value - s[ANCHOR]!;
-  s[S1]! += d;
-  s[S2]! += d * d;
-  const sum = s[SUM]!;
-  const total = sum + value;
-  const part = total - sum;
-  s[SUM] = total;
-  s[LOST]! += sum - (total - part) + (value - part); // two-sum; Knuth, The Art of Computer Programming 2, 4.2.2
-  if (value < s[LEAST]!) s[LEAST] = value;
-  if (value > s[MOST]!) s[MOST] = value;
-  c[RECORD]! += RECORD_FIELDS;
+  s[S1] = s1;
+  s[S2] = s2;
+  s[SUM] = sum;
+  s[LOST] = lost;
+  s[FRESH_S1]! += d;
+  s[FRESH_S2]! += d * d;
+  const fresh = s[FRESH_SUM]!;
+  const total = fresh + value;
+  part = total - fresh;
+  s[FRESH_SUM] = total;
+  s[FRESH_LOST]! += fresh - (total - part) + (value - part);
+  if (value < s[FRESH_LEAST]!) s[FRESH_LEAST] = value;
+  if (value > s[FRESH_MOST]!) s[FRESH_MOST] = value;
   c[NEXT] = next;
-  if (next === c[BLOCK_END]) found |= BLOCK;
+  if (next === c[BLOCK_END] || !(s2 >= s[FLOOR]!)) found |= BLOCK;
   if (c[HAS_BAND] === 0) return found | SETTLING;
 
   const z = (value - s[CENTRE]!) / s[SIGMA]!;
   s[Z] = z;
-  const bin = z >= FARTHEST ? LAST_BIN : z < -FARTHEST ? 0 : ((z + FARTHEST) * BINS_PER_SIGMA + 1) | 0;
+  const far = Math.abs(z);
+  const bin = far <= FARTHEST ? ((z + FARTHEST) * BINS_PER_SIGMA + 1) | 0 : z > 0 ? LAST_BIN : 0;
   const count = histogram[bin]!;
   if (count < FULL_BIN) histogram[bin] = count + 1;
 
   // The zone rules. A value exactly on a line is not beyond it, exactly on the centre it is on neither side.
-  const far = Math.abs(z);
   const high = 0 - +(z > 0); // all bits, or none
   const low = 0 - +(z < 0);
-  const beyond = (+(far > s[LINE1]!) << ONE) | (+(far > s[LINE2]!) << TWO);
-  const recent = ((c[RECENT]! << 1) & KEEP) | (beyond & high) | ((beyond & low) << SIDE_BITS);
   const above = (c[ABOVE]! + 1 - (c[ABOVE]! >> LONGEST)) & high;
   const below = (c[BELOW]! + 1 - (c[BELOW]! >> LONGEST)) & low;
-  c[RECENT] = recent;
   c[ABOVE] = above;
   c[BELOW] = below;
-  const run = above | below; // one of them is 0
-  found |= (+(far > s[LINE3]!) | HOLDS[recent & 0xff]! | HOLDS[recent >> SIDE_BITS]! | (+(run >= c[SIDE_RUN]!) << EIGHT)) & c[ENABLED]!;
-  if (far > s[PREDICTION]!) found |= INCONSISTENT;
+  found |= (+((above | below) >= c[SIDE_RUN]!) << EIGHT) & c[ENABLED]!; // one of the runs is 0
+  let recent = (c[RECENT]! << 1) & KEEP;
+  if ((recent | +(far > s[LINE1]!)) !== 0) {
+    const beyond = (+(far > s[LINE1]!) << ONE) | (+(far > s[LINE2]!) << TWO);
+    recent |= (beyond & high) | ((beyond & low) << SIDE_BITS);
+    found |= (+(far > s[LINE3]!) | HOLDS[recent & 0xff]! | HOLDS[recent >> SIDE_BITS]!) & c[ENABLED]!;
+    if (far > s[PREDICTION]!) found |= INCONSISTENT; // it lies beyond the lines
+  }
+  c[RECENT] = recent;
 
   // Frozen: see frozen.ts.
   if (c[WATCHES_REPEATS] !== 0) {

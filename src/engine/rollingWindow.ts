@@ -1,32 +1,30 @@
 import { mad, middle } from '../stats/quickselect.js';
 import * as state from './state.js';
-import { ANCHOR, BLOCK, BLOCK_BEGIN, BLOCK_END, FULL, NEXT } from './state.js';
+import { ANCHOR, BLOCK, BLOCK_BEGIN, BLOCK_END, FLOOR, FRESH_LEAST, FRESH_LOST, FRESH_MOST, FRESH_S1, FRESH_S2, FRESH_SUM } from './state.js';
+import { FULL, NEXT, OLD_EXTREME } from './state.js';
 import type { WindowStatistics } from './window.js';
 
 /*
- * The ring is cut into blocks of about sqrt(window) places. At any time each reading lies in one of three pieces:
- *   fresh   this lap's readings in the block being written, as running sums
- *   old     what is left of the oldest block, which is the one being overwritten
- *   middle  all the other blocks
- * When a block is opened, `rest` is made: for each number of fresh readings, the sums of old and middle together. A query
- * adds two records. Nothing is ever subtracted from a sum, so that nothing drifts and an outlier leaves no trace.
+ * The window keeps sums, and the quiet path adds to them the reading that comes and takes off the one that goes. Left
+ * alone, such sums drift, and are worthless after an outlier has gone. So they are made anew, from parts of which nothing
+ * was ever taken off, every block of readings: the ring is cut into blocks of a few times sqrt(window) places, and at any
+ * time each reading lies in one of three pieces:
+ *   fresh    this lap's readings in the block being written, with sums of their own
+ *   old      what is left of the oldest block, which is the one being overwritten
+ *   middle   all the other blocks, as one aggregate
+ * Between, rounding errors of one block's readings are all there is. They are counted in last places of the largest sum
+ * of squares since, so the sums are also made anew as soon as that sum has fallen to a sixteenth (FLOOR): an outlier
+ * leaves no trace. Only readings that were there when the sums were made can go before they are made anew.
  *
- * Fresh and rest sum deviations from one anchor, a reading that stays in the window as long as the block is written. With
- * a summed reading as anchor, S2 - S1^2 / n loses at most a factor n of the last place. What is kept beyond that time, the
+ * Deviations are taken from an anchor, a reading that stays in the window as long as the block is written. With a summed
+ * reading as anchor, S2 - S1^2 / n loses at most a factor n of the last place. What is kept beyond that time, the
  * aggregate of a whole block, is summed once more about the block's own mean where the anchor was far from it.
  *
  * The first block has one place: it is closed by its first reading, so that the very first one needs no anchor.
  */
 
 // Constants of this file, see state.ts: mean and sd are asked for at each reading.
-const { READINGS, S1, S2, SUM, LOST, LEAST, MOST, COUNT, SCALE, RECORD, RECORD_FIELDS } = state;
-// A record of the rest: the same sums as of the fresh readings.
-const R_S1 = 0;
-const R_S2 = 1;
-const R_SUM = 2;
-const R_LOST = 3;
-const R_LEAST = 4;
-const R_MOST = 5;
+const { READINGS, S1, S2, SUM, LOST, COUNT, SCALE } = state;
 // An aggregate of whole blocks, in doubles. Mean = anchor + offset; the sum is kept to twice the digits of a double.
 const A_N = 0;
 const A_ANCHOR = 1;
@@ -39,19 +37,23 @@ const A_MOST = 7;
 const FIELDS = 8;
 /** Share of S2 that must be left in S2 - S1^2 / n: less, and more than five bits are lost. */
 const ENOUGH = 1 / 32;
+const MAY_FALL_TO = 1 / 16;
 
 let scratch = new Float64Array(512); // for order statistics; shared, since they are asked for one at a time
 
 /**
- * Statistics of the newest `size` readings, which the quiet path takes in. Taking and asking cost the same at every reading and allocate nothing.
- * Blocks are joined after Chan, Golub and LeVeque, The American Statistician 37(3), 1983; sums are compensated. Readings
- * may be anything whose square is finite (below 1e154): one beyond that leaves sd NaN or infinite while it is in the window.
+ * Statistics of the newest `size` readings, which the quiet path takes in. Taking and asking cost the same at every reading
+ * and allocate nothing. Blocks are joined after Chan, Golub and LeVeque, The American Statistician 37(3), 1983; sums are
+ * compensated. Readings may be anything whose square is finite (below 1e154): one beyond that leaves sd NaN or infinite
+ * while it is in the window.
  */
 export class RollingWindow {
   private readonly blocks: Float64Array;
-  private readonly rest: Float64Array;
   private readonly back = new Float64Array(FIELDS);
   private readonly middle = new Float64Array(FIELDS);
+  /** Extremes of the middle and of the old block from each place on, where the old block holds an extreme. */
+  private readonly oldLeast: Float64Array;
+  private readonly oldMost: Float64Array;
   private readonly blockSize: number;
 
   /**
@@ -63,14 +65,15 @@ export class RollingWindow {
     private readonly s: Float64Array,
     private readonly c: Int32Array,
   ) {
-    this.blockSize = Math.max(1, Math.min(Math.round(1.4 * Math.sqrt(size)), size - 3));
+    this.blockSize = Math.max(1, Math.min(Math.round(4.5 * Math.sqrt(size)), size >> 2));
     this.blocks = new Float64Array((1 + Math.ceil((size - 1) / this.blockSize)) * FIELDS);
-    this.rest = new Float64Array(this.blockSize * RECORD_FIELDS);
-    s[LEAST] = Infinity;
-    s[MOST] = -Infinity;
+    this.oldLeast = new Float64Array(this.blockSize);
+    this.oldMost = new Float64Array(this.blockSize);
+    this.middle[A_LEAST] = Infinity;
+    this.middle[A_MOST] = -Infinity;
+    s[FRESH_LEAST] = Infinity;
+    s[FRESH_MOST] = -Infinity;
     s[SCALE] = NaN;
-    this.rest[R_LEAST] = Infinity;
-    this.rest[R_MOST] = -Infinity;
     c[BLOCK_END] = 1;
   }
 
@@ -80,35 +83,42 @@ export class RollingWindow {
 
   /** Mean; NaN before the first reading. */
   mean(): number {
-    const { s, rest } = this;
-    const record = this.c[RECORD]!;
-    const a = s[SUM]!;
-    const b = rest[record + R_SUM]!;
-    const total = a + b;
-    const part = total - a;
-    return (total + (a - (total - part) + (b - part) + (s[LOST]! + rest[record + R_LOST]!))) / s[COUNT]!;
+    const { s } = this;
+    return (s[SUM]! + s[LOST]!) / s[COUNT]!;
   }
 
   /** Sample standard deviation (n - 1); NaN for fewer than two readings. */
   sd(): number {
-    const { s, rest } = this;
-    const record = this.c[RECORD]!;
-    const s1 = s[S1]! + rest[record + R_S1]!;
-    const s2 = s[S2]! + rest[record + R_S2]!;
-    return Math.sqrt(Math.max(0, s[COUNT]! * s2 - s1 * s1) * s[SCALE]!);
+    const { s } = this;
+    const s1 = s[S1]!;
+    return Math.sqrt(Math.max(0, s[COUNT]! * s[S2]! - s1 * s1) * s[SCALE]!);
   }
 
+  /** Least reading; NaN before the first. */
   min(): number {
-    return this.length === 0 ? NaN : Math.min(this.s[LEAST]!, this.rest[this.c[RECORD]! + R_LEAST]!);
+    const { s, c } = this;
+    const rest = c[OLD_EXTREME] === 1 ? this.oldLeast[c[NEXT]! - c[BLOCK_BEGIN]!]! : this.middle[A_LEAST]!;
+    return this.length === 0 ? NaN : Math.min(s[FRESH_LEAST]!, rest);
   }
 
+  /** Greatest reading; NaN before the first. */
   max(): number {
-    return this.length === 0 ? NaN : Math.max(this.s[MOST]!, this.rest[this.c[RECORD]! + R_MOST]!);
+    const { s, c } = this;
+    const rest = c[OLD_EXTREME] === 1 ? this.oldMost[c[NEXT]! - c[BLOCK_BEGIN]!]! : this.middle[A_MOST]!;
+    return this.length === 0 ? NaN : Math.max(s[FRESH_MOST]!, rest);
   }
 
-  /** Puts the block just written away and opens the next one. To be called as soon as the quiet path says that it is full. */
-  closeBlock(): void {
-    const { c, blocks, back, size } = this;
+  /** What must be done after a reading of which the quiet path says so: its block is full, or the sums have fallen too far. */
+  attend(): void {
+    const { s, c } = this;
+    if (c[NEXT] === c[BLOCK_END]) this.nextBlock();
+    s[ANCHOR] = this.anchor();
+    this.sumAnew();
+  }
+
+  /** Puts the block just written away and opens the next one. */
+  private nextBlock(): void {
+    const { s, c, blocks, back, middle, size } = this;
     const base = c[BLOCK]! * FIELDS;
     this.summarise(base);
     if (c[BLOCK_END]! < size) {
@@ -124,33 +134,40 @@ export class RollingWindow {
     }
     c[BLOCK_BEGIN] = c[NEXT]!;
     c[BLOCK_END] = c[BLOCK] === 0 ? 1 : Math.min(c[NEXT]! + this.blockSize, size);
-    c[RECORD] = 0;
-    this.openBlock();
+    s[FRESH_SUM] = 0;
+    s[FRESH_LOST] = 0;
+    s[FRESH_LEAST] = Infinity;
+    s[FRESH_MOST] = -Infinity;
+    middle[A_N] = 0;
+    const next = (c[BLOCK]! + 1) * FIELDS;
+    if (c[FULL] === 1 && next < blocks.length) join(middle, 0, blocks, next);
+    if (back[A_N]! > 0) join(middle, 0, back, 0);
+    this.findOldExtremes();
   }
 
   /** The aggregate of the block just written, from its sums where these do. */
   private summarise(base: number): void {
     const { s, c, blocks } = this;
     const n = c[BLOCK_END]! - c[BLOCK_BEGIN]!;
-    const s1 = s[S1]!;
-    const s2 = s[S2]!;
+    const s1 = s[FRESH_S1]!;
+    const s2 = s[FRESH_S2]!;
     const m2 = s2 - (s1 * s1) / n;
     blocks[base + A_N] = n;
     blocks[base + A_ANCHOR] = s[ANCHOR]!;
     blocks[base + A_OFFSET] = s1 / n;
     blocks[base + A_M2] = m2;
-    blocks[base + A_SUM] = s[SUM]!;
-    blocks[base + A_LOST] = s[LOST]!;
-    blocks[base + A_LEAST] = s[LEAST]!;
-    blocks[base + A_MOST] = s[MOST]!;
-    if (!(m2 > s2 * ENOUGH)) this.resum(base);
+    blocks[base + A_SUM] = s[FRESH_SUM]!;
+    blocks[base + A_LOST] = s[FRESH_LOST]!;
+    blocks[base + A_LEAST] = s[FRESH_LEAST]!;
+    blocks[base + A_MOST] = s[FRESH_MOST]!;
+    if (!(m2 > s2 * ENOUGH)) this.sumBlockAnew(base);
   }
 
   /** Deviations once more, about the block's own mean: the anchor was so far from it that the difference lost digits. */
-  private resum(base: number): void {
+  private sumBlockAnew(base: number): void {
     const { s, c, blocks } = this;
     const n = blocks[base + A_N]!;
-    const anchor = s[SUM]! / n;
+    const anchor = s[FRESH_SUM]! / n;
     let s1 = 0;
     let s2 = 0;
     for (let i = READINGS + c[BLOCK_BEGIN]!; i < READINGS + c[BLOCK_END]!; i++) {
@@ -163,10 +180,28 @@ export class RollingWindow {
     blocks[base + A_M2] = Math.max(0, s2 - (s1 * s1) / n);
   }
 
-  /** A reading that outlasts the block about to be written: the middle one of the newest three, so that it is no lone outlier. */
+  /** Whether the block about to be overwritten holds an extreme of the window; if so, the extremes from each of its places on. */
+  private findOldExtremes(): void {
+    const { s, c, middle, oldLeast, oldMost } = this;
+    c[OLD_EXTREME] = 0;
+    if (c[FULL] === 0) return;
+    const first = READINGS + c[BLOCK_BEGIN]!;
+    let least = middle[A_LEAST]!;
+    let most = middle[A_MOST]!;
+    for (let i = READINGS + c[BLOCK_END]! - 1; i >= first; i--) {
+      const x = s[i]!;
+      if (x < least) least = x;
+      if (x > most) most = x;
+      oldLeast[i - first] = least;
+      oldMost[i - first] = most;
+    }
+    if (least < middle[A_LEAST]! || most > middle[A_MOST]!) c[OLD_EXTREME] = 1;
+  }
+
+  /** A reading that outlasts the block being written: the middle one of the newest three, so that it is no lone outlier. */
   private anchor(): number {
     const { s, size } = this;
-    const last = this.c[BLOCK_BEGIN]! + size - 1;
+    const last = this.c[NEXT]! + size - 1;
     const a = s[READINGS + (last % size)]!;
     if (this.length < 3 || size < 4) return a;
     const b = s[READINGS + ((last - 1) % size)]!;
@@ -174,54 +209,47 @@ export class RollingWindow {
     return Math.max(Math.min(a, b), Math.min(Math.max(a, b), c));
   }
 
-  /** Makes `rest` for the block that is about to be written, while its old readings still stand. */
-  private openBlock(): void {
-    const { s, c, rest, middle, back, blocks } = this;
-    const first = READINGS + c[BLOCK_BEGIN]!;
-    const after = READINGS + c[BLOCK_END]!;
-    const full = c[FULL] === 1;
-    const anchor = this.anchor();
-    middle[A_N] = 0;
-    const next = (c[BLOCK]! + 1) * FIELDS;
-    if (full && next < blocks.length) join(middle, 0, blocks, next);
-    if (back[A_N]! > 0) join(middle, 0, back, 0);
-    const n = middle[A_N]; // never 0: a block is shorter than the window
-    const apart = middle[A_ANCHOR]! - anchor + middle[A_OFFSET]!;
-    let s1 = n * apart;
-    let s2 = middle[A_M2]! + s1 * apart;
-    let sum = middle[A_SUM]!;
-    let lost = middle[A_LOST]!;
-    let least = middle[A_LEAST]!;
-    let most = middle[A_MOST]!;
-    s[S1] = 0;
-    s[S2] = 0;
-    s[SUM] = 0;
-    s[LOST] = 0;
-    s[LEAST] = Infinity;
-    s[MOST] = -Infinity;
-    s[ANCHOR] = anchor;
-    let record = (after - first) * RECORD_FIELDS;
-    for (let i = after - 1; i >= first; i--) {
-      if (full) {
-        const x = s[i]!;
-        const d = x - anchor;
-        const total = sum + x;
-        const part = total - sum;
-        s1 += d;
-        s2 += d * d;
-        lost += sum - (total - part) + (x - part);
-        sum = total;
-        if (x < least) least = x;
-        if (x > most) most = x;
-      } // in the first lap there is no old block: then every record is the middle
-      record = (record - RECORD_FIELDS) | 0;
-      rest[record] = s1; // R_S1
-      rest[(record + R_S2) | 0] = s2;
-      rest[(record + R_SUM) | 0] = sum;
-      rest[(record + R_LOST) | 0] = lost;
-      rest[(record + R_LEAST) | 0] = least;
-      rest[(record + R_MOST) | 0] = most;
+  /** Makes the sums anew about the anchor: of the fresh readings, of the old ones that are left, of the middle. */
+  private sumAnew(): void {
+    const { s, c, middle } = this;
+    const anchor = s[ANCHOR]!;
+    const next = READINGS + c[NEXT]!;
+    let s1 = 0;
+    let s2 = 0;
+    for (let i = READINGS + c[BLOCK_BEGIN]!; i < next; i++) {
+      const d = s[i]! - anchor;
+      s1 += d;
+      s2 += d * d;
     }
+    s[FRESH_S1] = s1;
+    s[FRESH_S2] = s2;
+    let sum = s[FRESH_SUM]!;
+    let lost = s[FRESH_LOST]!;
+    const end = c[FULL] === 1 ? READINGS + c[BLOCK_END]! : next;
+    for (let i = next; i < end; i++) {
+      const x = s[i]!;
+      const d = x - anchor;
+      s1 += d;
+      s2 += d * d;
+      const total = sum + x;
+      lost += roundingError(sum, x, total);
+      sum = total;
+    }
+    const n = middle[A_N]!;
+    if (n > 0) {
+      const apart = middle[A_ANCHOR]! - anchor + middle[A_OFFSET]!;
+      s1 += n * apart;
+      s2 += middle[A_M2]! + n * apart * apart;
+      const x = middle[A_SUM]!;
+      const total = sum + x;
+      lost += roundingError(sum, x, total) + middle[A_LOST]!;
+      sum = total;
+    }
+    s[S1] = s1;
+    s[S2] = s2;
+    s[SUM] = sum;
+    s[LOST] = lost;
+    s[FLOOR] = s2 * MAY_FALL_TO;
   }
 
   /** Copies the newest `min(length, out.length)` readings, oldest first. @returns how many */
@@ -277,7 +305,7 @@ export class RollingWindow {
 
   /** The arrays of the window alone, for snapshots; with those of the channel written back they restore it. */
   arrays(): Readonly<Record<string, Float64Array>> {
-    return { blocks: this.blocks, rest: this.rest, back: this.back };
+    return { blocks: this.blocks, back: this.back, middle: this.middle, oldLeast: this.oldLeast, oldMost: this.oldMost };
   }
 }
 

@@ -36,30 +36,34 @@ export const LAST_VALUE = 17;
 export const STEP = 18;
 export const LEAST_STEP = 19;
 export const STEPS_SEEN = 20;
-/** Window, fresh readings: sums of deviations from the anchor and of their squares, of the readings and what that lost in rounding; extremes; the anchor. */
+/** Window: sums of deviations from the anchor and of their squares; of the readings, and what that lost in rounding; the anchor; what the squares may fall to. */
 export const S1 = 21;
 export const S2 = 22;
 export const SUM = 23;
 export const LOST = 24;
-export const LEAST = 25;
-export const MOST = 26;
-export const ANCHOR = 27;
+export const ANCHOR = 25;
+export const FLOOR = 26;
+/** Window: the same sums and the extremes of the fresh readings, those of the block being written. */
+export const FRESH_S1 = 27;
+export const FRESH_S2 = 28;
+export const FRESH_SUM = 29;
+export const FRESH_LOST = 30;
+export const FRESH_LEAST = 31;
+export const FRESH_MOST = 32;
 /** Window: readings held, n, and 1 / n(n - 1). */
-export const COUNT = 28;
-export const SCALE = 29;
+export const COUNT = 33;
+export const SCALE = 34;
 /** Window: its readings; the rings of the evidence begin after them. */
-export const READINGS = 30;
+export const READINGS = 35;
 
 // Integers.
-/** Window: where the next reading goes, its record of the rest, where the block began and ends, its number, 1 once the ring is full. */
+/** Window: where the next reading goes, where the block began and ends, its number; 1 once the ring is full; 1 while the old block holds an extreme. */
 export const NEXT = 0;
-export const RECORD = 1;
-export const BLOCK_BEGIN = 2;
-export const BLOCK_END = 3;
-export const BLOCK = 4;
-export const FULL = 5;
-/** Fields of a record of the rest. */
-export const RECORD_FIELDS = 6;
+export const BLOCK_BEGIN = 1;
+export const BLOCK_END = 2;
+export const BLOCK = 3;
+export const FULL = 4;
+export const OLD_EXTREME = 5;
 /** Zone rules: which of the newest readings lay beyond a line (see zoneRules.ts); readings in a row on one side; length of run asked for; rules that are on. */
 export const RECENT = 6;
 export const ABOVE = 7;
