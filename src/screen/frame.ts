@@ -57,12 +57,15 @@ function drawHeader(r: Raster, t: Theme, view: StandView, ui: Ui): void {
 function drawTitle(r: Raster, t: Theme, view: StandView, ui: Ui, places: Layout, selected: number): void {
   const c = view.channels[selected]!;
   for (let x = 0; x < r.width; x++) r.put(x, places.title, '─', t.faint, 1);
-  const at = r.text(2, places.title, ` ${c.channel}${c.unit && ` [${c.unit}]`} `, t.strong, 40);
+  let at = r.text(2, places.title, ` ${c.channel}${c.unit && ` [${c.unit}]`} `, t.strong, 40);
   const shown = Math.min(ui.span, c.trendLength);
   if (shown > 1) {
     const span = c.trendTimes[c.trendLength - 1]! - c.trendTimes[c.trendLength - shown]!;
-    r.text(at + 1, places.title, ` ${shown} readings, ${formatDuration(span)} `, t.faint, 40);
+    at = r.text(at + 1, places.title, ` ${shown} readings, ${formatDuration(span)} `, t.faint, 40);
   }
+  const silent = view.alarms.some(({ channel, detector, clearedAt }) => channel === c.channel && detector === 'silent' && clearedAt === null);
+  // a picture that stands still looks like one in which nothing changes
+  if ((silent || c.stale) && c.time !== null) r.text(at + 1, places.title, ` the last one ${formatDuration(Math.max(0, view.now - c.time))} ago `, silent ? t.alarm : t.note, 40);
   const below = view.channels.length - ui.first - places.roster[1];
   if (view.channels.length > places.roster[1]) {
     const more = ` ${ui.first} above, ${Math.max(0, below)} below `;

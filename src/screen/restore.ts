@@ -2,9 +2,9 @@ import { constants as files, closeSync, openSync, writeSync } from 'node:fs';
 import type { BlessedScreen } from './blessed.js';
 import { closeDeadTerminalsAtExit, mute, watchTerminal } from './terminalGone.js';
 
-/** Off: mouse, focus and paste modes, keypad; attributes, character set; cursor shown; main screen. Each does no harm where it was off. */
+/** Off: mouse, focus and paste modes, keypad; attributes, character set, scrolling region; cursor shown; main screen. Each does no harm where it was off. */
 export const RESET =
-  '\x1b[?1000l\x1b[?1002l\x1b[?1003l\x1b[?1006l\x1b[?1004l\x1b[?2004l\x1b[?1l\x1b>\x1b(B\x1b[m\x1b[?25h\x1b[?1049l\x1b[?25h';
+  '\x1b[?1000l\x1b[?1002l\x1b[?1003l\x1b[?1006l\x1b[?1004l\x1b[?2004l\x1b[?1l\x1b>\x1b(B\x1b[m\x1b7\x1b[r\x1b8\x1b[?25h\x1b[?1049l\x1b[?25h';
 
 export interface Restorer {
   restore(): void;
@@ -63,6 +63,7 @@ export function restoreOnEnd(
     });
   handlers.set('SIGTSTP', () => {
     screen.leave();
+    output.write(RESET);
     raw(false);
     process.stdin.pause();
     process.kill(process.pid, 'SIGSTOP'); // a handler for TSTP takes the stop away: it is done here

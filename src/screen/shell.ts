@@ -9,7 +9,7 @@ import type { Layout } from './layout.js';
 import type { ChannelView, StandView } from './model.js';
 import { Raster } from './raster.js';
 import { restoreOnEnd } from './restore.js';
-import { openBlessed, terminalProfile } from './terminal.js';
+import { assumeSize, openBlessed, terminalProfile } from './terminal.js';
 import { theme } from './theme.js';
 import { act, initialUi, selectedIndex, type Action } from './ui.js';
 
@@ -56,6 +56,7 @@ export function openScreen(options: ScreenOptions): ScreenHandle {
   const profile = terminalProfile(options.env);
   const output = options.output ?? process.stdout;
   unblock(output);
+  assumeSize(output, options.env);
   const screen = openBlessed(profile, new TokenInput(options.input ?? process.stdin), output);
   const raster = new Raster(profile.dots);
   const colours = theme(profile.colours);

@@ -33,6 +33,16 @@ export function terminalProfile(env: NodeJS.ProcessEnv): TerminalProfile {
   };
 }
 
+/**
+ * A serial console seldom knows its size and gives 0 by 0. LINES and COLUMNS say it, else it is taken to be 80 by 24, as
+ * terminals were.
+ */
+export function assumeSize(output: { columns?: number; rows?: number }, env: NodeJS.ProcessEnv): void {
+  const given = (text: string | undefined): number | null => (/^[1-9]\d{0,3}$/.test(text ?? '') ? Number(text) : null);
+  output.columns ||= given(env['COLUMNS']) ?? 80;
+  output.rows ||= given(env['LINES']) ?? 24;
+}
+
 /** A blessed screen for the profile. Nothing but ASCII leaves it without UTF-8, and no colour without colours. */
 export function openBlessed(profile: TerminalProfile, input: NodeJS.ReadableStream, output: NodeJS.WritableStream): BlessedScreen {
   blessed.Tput.ipaths.length = 0; // its search path for descriptions: it would read files that it cannot parse

@@ -33,11 +33,12 @@ interface Session {
   owner(): string;
 }
 
-function start(env: Record<string, string> = {}): Session {
+/** @param before done by the shell on the terminal first */
+function start(env: Record<string, string> = {}, before = 'true'): Session {
   const screen = new xterm.Terminal({ cols: 80, rows: 24, allowProposedApi: true, scrollback: 0 });
   const said = join(folder, 'stderr');
   // through a shell, so that standard error is a file and the terminal holds the screen alone
-  const pty = spawn('/bin/sh', ['-c', 'exec "$0" "$1" 2>"$2"', process.execPath, PROGRAM, said], {
+  const pty = spawn('/bin/sh', ['-c', `${before}; exec "$0" "$1" 2>"$2"`, process.execPath, PROGRAM, said], {
     name: 'xterm-256color', cols: 80, rows: 24,
     env: { ...process.env, TERM: 'xterm-256color', LANG: 'C.UTF-8', LC_ALL: 'C.UTF-8', NO_COLOR: '', ...env },
   });
@@ -111,6 +112,13 @@ describe('on a real terminal', () => {
   });
 });
 
+it('a terminal that does not know its size, as serial consoles do, is taken to be 80 by 24', async () => {
+  const session = start({ COLUMNS: '', LINES: '' }, 'stty cols 0 rows 0');
+  await session.until(/all 6 channels are in their bands[^]*2 of 2 sources open/);
+  session.pty.write('q');
+  expect(await session.ended()).toBe(0);
+});
+
 describe('the terminal is given back, and the owner told', () => {
   it.each(['SIGTERM', 'SIGHUP', 'SIGINT', 'SIGQUIT'])('on %s', async (signal) => {
     const session = start();
@@ -145,7 +153,7 @@ it('stopped and continued, the screen leaves the terminal and takes it again', a
   await session.until(/all 6 channels are in their bands/);
   session.pty.kill('SIGTSTP');
   await until(() => session.bytes().includes('\x1b[?1049l'));
-  expect(session.bytes()).toContain('\x1b[?1049l');
+  for (const off of GIVEN_BACK) expect(session.bytes()).toContain(off);
   const before = session.bytes().length;
   session.pty.kill('SIGCONT');
   await until(() => session.bytes().slice(before).includes('coolant-out'));

@@ -94,6 +94,16 @@ describe('values', () => {
     shown = await show(inventedStand({ channels: [channel(2, { state: 'alarm' })], alarms: [alarm({ detector, side: null, odds: null })] }));
     expect(shown.tty.colourOf(`■ ${word}`)).toBe(167);
   });
+
+  it('a silent channel, whose picture stands still, says how old its last reading is', async () => {
+    const c = channel(2, { state: 'alarm', time: NOW - 95_000 });
+    shown = await show(inventedStand({ channels: [c], alarms: [alarm({ detector: 'silent', side: null, odds: null })] }));
+    expect(shown.tty.lines()[2]).toContain('the last one 1 min 35 s ago');
+    expect(shown.tty.colourOf('the last one')).toBe(167);
+    shown.screen.close();
+    shown = await show(inventedStand({ channels: [c], alarms: [alarm({ detector: 'silent', side: null, odds: null, clearedAt: NOW })] }));
+    expect(shown.tty.text()).not.toContain('the last one');
+  });
 });
 
 describe('the status line', () => {

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { checkTerminal } from '../../src/screen/shell.js';
-import { terminalProfile } from '../../src/screen/terminal.js';
+import { assumeSize, terminalProfile } from '../../src/screen/terminal.js';
 import { UserError } from '../../src/text/errors.js';
 
 const TTY = { isTTY: true };
@@ -28,6 +28,17 @@ describe('what a terminal can show', () => {
     ['xterm-256color', { NO_COLOR: '1' }, 0],
     ['xterm-256color', { NO_COLOR: '' }, 256], // no-color.org: only a value that is not empty counts
   ])('%s with %o has %i colours', (TERM, more, colours) => expect(terminalProfile({ TERM, ...more }).colours).toBe(colours));
+});
+
+it.each([
+  [{ columns: 0, rows: 0 }, {}, { columns: 80, rows: 24 }],
+  [{ columns: 0, rows: 0 }, { COLUMNS: '132', LINES: '43' }, { columns: 132, rows: 43 }],
+  [{ columns: 0, rows: 0 }, { COLUMNS: '-1', LINES: '1e9' }, { columns: 80, rows: 24 }],
+  [{}, { COLUMNS: '' }, { columns: 80, rows: 24 }],
+  [{ columns: 100, rows: 30 }, { COLUMNS: '132', LINES: '43' }, { columns: 100, rows: 30 }], // what the terminal says comes first
+])('a terminal of %o with %o is taken to be %o', (output: { columns?: number; rows?: number }, env, size) => {
+  assumeSize(output, env);
+  expect(output).toEqual(size);
 });
 
 describe('no screen where none can be shown', () => {
