@@ -6,7 +6,7 @@ import { evidenceRoom, layEvidence, listEvidence } from './evidence.js';
 import type { EngineEvent } from './events.js';
 import { layFrozen, logChance, measureStep, smallestStep } from './frozen.js';
 import { emptyHistogram } from './histogram.js';
-import { BLOCK_BIT, FROZEN_BIT, OFF_SCALE_BIT, OUTSIDE_BIT, quietPath, SETTLING_BIT } from './quietPath.js';
+import { BLOCK_BIT, FROZEN_BIT, OFF_SCALE_BIT, OUTSIDE_BIT, quietPath, SETTLING_BIT, STEP_BIT } from './quietPath.js';
 import { RollingWindow } from './rollingWindow.js';
 import { RULE_BIT, ruleMask, RULES, type Detector, type Rule, type Side } from './rules.js';
 import { pack, unpack, type ChannelSnapshot } from './snapshot.js';
@@ -36,8 +36,7 @@ export class Channel {
   private readonly window: RollingWindow;
   private readonly baseline: Baseline | null;
   private readonly standing: Alarms;
-  /** Whether each reading has to go on beyond the quiet path: to the supplementary rules, or to measure its step. */
-  private readonly further: boolean;
+  private readonly supplementary: boolean;
   private bandInForce: Band | null = null;
 
   constructor(readonly spec: ChannelSpec) {
@@ -59,7 +58,7 @@ export class Channel {
     layEvidence(s, c, READINGS + spec.window, sideRun);
     this.window = new RollingWindow(spec.window, s, c);
     this.standing = new Alarms(spec);
-    this.further = (c[ENABLED] & SUPPLEMENTARY) !== 0 || (spec.frozen && spec.resolution === null);
+    this.supplementary = (c[ENABLED] & SUPPLEMENTARY) !== 0;
     if ('learn' in band) this.baseline = new Baseline(band.learn);
     else {
       this.baseline = null;
@@ -110,15 +109,8 @@ export class Channel {
     s[TIME] = time;
     s[VALUE] = value;
     let found = quietPath(s, this.c, this.histogram);
-    if (this.further) found = this.lookFurther(found);
+    if (this.supplementary && (found & (OFF_SCALE_BIT | SETTLING_BIT)) === 0) found |= supplementary(s, this.c);
     return found === 0 && this.standing.none ? NONE : this.attend(found);
-  }
-
-  private lookFurther(found: number): number {
-    if ((found & (OFF_SCALE_BIT | SETTLING_BIT)) !== 0) return found;
-    const { s, c, spec } = this;
-    if (spec.frozen && spec.resolution === null) measureStep(s, c, s[SIGMA]!, spec.frozenOdds);
-    return (c[ENABLED]! & SUPPLEMENTARY) === 0 ? found : found | supplementary(s, c);
   }
 
   /** A reading that is not quiet, or after which the window must be attended to. */
@@ -126,7 +118,8 @@ export class Channel {
     if ((found & OFF_SCALE_BIT) !== 0) return this.offScale();
     if ((found & BLOCK_BIT) !== 0) this.window.attend();
     if ((found & SETTLING_BIT) !== 0) return this.settle(found & OUTSIDE_BIT);
-    const signals = found & ~BLOCK_BIT;
+    if ((found & STEP_BIT) !== 0) measureStep(this.s, this.c, this.s[SIGMA]!, this.spec.frozenOdds);
+    const signals = found & ~(BLOCK_BIT | STEP_BIT);
     return signals === 0 && this.standing.none ? NONE : this.report(signals);
   }
 
@@ -214,7 +207,7 @@ export class Channel {
 
   private frozenGrounds(): Grounds {
     const { s, c, spec } = this;
-    const step = smallestStep(s, spec.resolution) ?? NaN;
+    const step = smallestStep(s, c, spec.resolution) ?? NaN;
     const lnChance = logChance(step, s[SIGMA]!);
     const times = c[REPEATS]!;
     return this.grounds({ repeats: times, step, chance: Math.exp(lnChance), odds: spec.frozenOdds }, times * lnChance);

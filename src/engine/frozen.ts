@@ -1,5 +1,5 @@
 import { between, upperTail } from '../stats/normal.js';
-import { LAST_VALUE, LEAST_STEP, REPEATS, REPEATS_NEEDED, STEP, STEPS_SEEN } from './state.js';
+import { LAST_VALUE, LEAST_STEP, REPEATS, REPEATS_NEEDED, STEP, STEP_BELOW, STEPS_SEEN } from './state.js';
 
 /** Fewer repeats never count as frozen, however unlikely. */
 export const FEWEST_REPEATS = 4;
@@ -18,27 +18,25 @@ const NEVER = 2 ** 31 - 1;
 /** Begins to judge by a band. @param resolution null: judged from the readings; @param odds below which repeats count as frozen */
 export function layFrozen(s: Float64Array, c: Int32Array, sigma: number, resolution: number | null, odds: number): void {
   s[LAST_VALUE] = NaN;
-  s[LEAST_STEP] = Infinity;
-  s[STEPS_SEEN] = 0;
   s[STEP] = NaN;
+  s[STEP_BELOW] = resolution === null ? Infinity : 0;
+  s[LEAST_STEP] = Infinity;
+  c[STEPS_SEEN] = 0;
   c[REPEATS] = 0;
   c[REPEATS_NEEDED] = resolution === null ? NEVER : repeatsNeeded(logChance(resolution, sigma), odds);
 }
 
-/** Where the resolution is not known: takes the step to the reading at hand into the guess at it. */
+/** Where the resolution is not known: takes a step into the guess at it. After the first few only smaller ones are worth it. */
 export function measureStep(s: Float64Array, c: Int32Array, sigma: number, odds: number): void {
-  const size = Math.abs(s[STEP]!);
-  if (!(size > 0)) return; // a repeat, or the first reading
-  s[STEPS_SEEN]!++;
-  if (size < s[LEAST_STEP]!) s[LEAST_STEP] = size;
-  else if (s[STEPS_SEEN] !== STEPS) return;
-  const known = smallestStep(s, null);
-  if (known !== null) c[REPEATS_NEEDED] = repeatsNeeded(logChance(known, sigma), odds);
+  s[LEAST_STEP] = Math.min(s[LEAST_STEP]!, s[STEP]!);
+  if (++c[STEPS_SEEN]! < STEPS) return;
+  s[STEP_BELOW] = s[LEAST_STEP];
+  c[REPEATS_NEEDED] = repeatsNeeded(logChance(s[LEAST_STEP], sigma), odds);
 }
 
 /** The step by which repeats are judged; null while it is not known. */
-export function smallestStep(s: Float64Array, resolution: number | null): number | null {
-  return resolution ?? (s[STEPS_SEEN]! >= STEPS ? s[LEAST_STEP]! : null);
+export function smallestStep(s: Float64Array, c: Int32Array, resolution: number | null): number | null {
+  return resolution ?? (c[STEPS_SEEN]! >= STEPS ? s[LEAST_STEP]! : null);
 }
 
 /** ln(2 Phi(r / 2 sigma) - 1), without cancellation where that probability is near 0 or near 1. */

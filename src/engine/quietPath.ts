@@ -9,7 +9,7 @@ const { EVIDENCE, EVIDENCE_MASK, EVIDENCE_NEWEST } = state;
 const { READINGS, NEXT, BLOCK_END, FULL, COUNT, SCALE, ANCHOR, FLOOR, S1, S2, SUM, LOST } = state;
 const { FRESH_S1, FRESH_S2, FRESH_SUM, FRESH_LOST, FRESH_LEAST, FRESH_MOST } = state;
 const { LINE1, LINE2, LINE3, RECENT, ABOVE, BELOW, SIDE_RUN, ENABLED } = state;
-const { HAS_BAND, WATCHES_REPEATS, LAST_VALUE, STEP, REPEATS, REPEATS_NEEDED } = state;
+const { HAS_BAND, WATCHES_REPEATS, LAST_VALUE, STEP, STEP_BELOW, REPEATS, REPEATS_NEEDED } = state;
 const { TWO, ONE, SIDE_BITS, KEEP, HOLDS } = zones;
 const [LAST_BIN, FULL_BIN, BINS_PER_SIGMA, FARTHEST] = [BINS - 1, COUNT_FULL, PER_SIGMA, REACH];
 const INCONSISTENT = RULE_BIT.inconsistent;
@@ -22,12 +22,14 @@ export const OUTSIDE_BIT = FROZEN_BIT << 1;
 export const OFF_SCALE_BIT = FROZEN_BIT << 2;
 export const SETTLING_BIT = FROZEN_BIT << 3;
 export const BLOCK_BIT = FROZEN_BIT << 4;
+export const STEP_BIT = FROZEN_BIT << 5;
 
 const FROZEN = FROZEN_BIT;
 const OUTSIDE = OUTSIDE_BIT;
 const OFF_SCALE = OFF_SCALE_BIT;
 const SETTLING = SETTLING_BIT;
 const BLOCK = BLOCK_BIT;
+const SMALL_STEP = STEP_BIT;
 
 /**
  * Takes the reading at hand through everything that a quiet reading meets, and says what was not quiet about it. One
@@ -35,7 +37,7 @@ const BLOCK = BLOCK_BIT;
  * that noise decides anew each time, and no processor foresees, becomes a bit).
  * @param s the doubles of the channel, c its integers: see state.ts
  * @returns 0, or the bits of the rules that signal, and FROZEN, OUTSIDE (the tolerance), OFF_SCALE, SETTLING (there is no
- *   band: the reading has not been judged), BLOCK (the window must be attended to)
+ *   band: the reading has not been judged), BLOCK (the window must be attended to), SMALL_STEP (it may tell the resolution)
  */
 export function quietPath(s: Float64Array, c: Int32Array, histogram: Uint32Array): number {
   const value = s[VALUE]!;
@@ -126,14 +128,17 @@ export function quietPath(s: Float64Array, c: Int32Array, histogram: Uint32Array
 
   // Frozen: see frozen.ts.
   if (c[WATCHES_REPEATS] !== 0) {
-    const last = s[LAST_VALUE]!;
-    s[STEP] = value - last;
+    const step = Math.abs(value - s[LAST_VALUE]!);
+    s[STEP] = step;
     s[LAST_VALUE] = value;
-    if (value === last) {
+    if (step === 0) {
       const repeats = c[REPEATS]! + 1 - (c[REPEATS]! >> LONGEST);
       c[REPEATS] = repeats;
       if (repeats >= c[REPEATS_NEEDED]!) found |= FROZEN;
-    } else c[REPEATS] = 0;
+    } else {
+      c[REPEATS] = 0;
+      if (step < s[STEP_BELOW]!) found |= SMALL_STEP;
+    }
   }
   return found;
 }

@@ -51,9 +51,9 @@ export class RollingWindow {
   private readonly blocks: Float64Array;
   private readonly back = new Float64Array(FIELDS);
   private readonly middle = new Float64Array(FIELDS);
-  /** Extremes of the middle and of the old block from each place on, where the old block holds an extreme. */
-  private readonly oldLeast: Float64Array;
-  private readonly oldMost: Float64Array;
+  /** Where the old block holds an extreme: the place of the extreme from each of its places on; -1: in the middle. */
+  private readonly oldLeast: Int32Array;
+  private readonly oldMost: Int32Array;
   private readonly blockSize: number;
 
   /**
@@ -67,8 +67,8 @@ export class RollingWindow {
   ) {
     this.blockSize = Math.max(1, Math.min(Math.round(4.5 * Math.sqrt(size)), size >> 2));
     this.blocks = new Float64Array((1 + Math.ceil((size - 1) / this.blockSize)) * FIELDS);
-    this.oldLeast = new Float64Array(this.blockSize);
-    this.oldMost = new Float64Array(this.blockSize);
+    this.oldLeast = new Int32Array(this.blockSize);
+    this.oldMost = new Int32Array(this.blockSize);
     this.middle[A_LEAST] = Infinity;
     this.middle[A_MOST] = -Infinity;
     s[FRESH_LEAST] = Infinity;
@@ -96,16 +96,18 @@ export class RollingWindow {
 
   /** Least reading; NaN before the first. */
   min(): number {
-    const { s, c } = this;
-    const rest = c[OLD_EXTREME] === 1 ? this.oldLeast[c[NEXT]! - c[BLOCK_BEGIN]!]! : this.middle[A_LEAST]!;
-    return this.length === 0 ? NaN : Math.min(s[FRESH_LEAST]!, rest);
+    return this.length === 0 ? NaN : Math.min(this.s[FRESH_LEAST]!, this.extremeOfRest(this.oldLeast, A_LEAST));
   }
 
   /** Greatest reading; NaN before the first. */
   max(): number {
+    return this.length === 0 ? NaN : Math.max(this.s[FRESH_MOST]!, this.extremeOfRest(this.oldMost, A_MOST));
+  }
+
+  private extremeOfRest(places: Int32Array, ofMiddle: number): number {
     const { s, c } = this;
-    const rest = c[OLD_EXTREME] === 1 ? this.oldMost[c[NEXT]! - c[BLOCK_BEGIN]!]! : this.middle[A_MOST]!;
-    return this.length === 0 ? NaN : Math.max(s[FRESH_MOST]!, rest);
+    const place = c[OLD_EXTREME] === 1 ? places[c[NEXT]! - c[BLOCK_BEGIN]!]! : -1;
+    return place < 0 ? this.middle[ofMiddle]! : s[READINGS + place]!;
   }
 
   /** What must be done after a reading of which the quiet path says so: its block is full, or the sums have fallen too far. */
@@ -180,22 +182,29 @@ export class RollingWindow {
     blocks[base + A_M2] = Math.max(0, s2 - (s1 * s1) / n);
   }
 
-  /** Whether the block about to be overwritten holds an extreme of the window; if so, the extremes from each of its places on. */
+  /** Whether the block about to be overwritten holds an extreme of the window, and where, from each of its places on. */
   private findOldExtremes(): void {
     const { s, c, middle, oldLeast, oldMost } = this;
     c[OLD_EXTREME] = 0;
     if (c[FULL] === 0) return;
-    const first = READINGS + c[BLOCK_BEGIN]!;
+    const first = c[BLOCK_BEGIN]!;
     let least = middle[A_LEAST]!;
     let most = middle[A_MOST]!;
-    for (let i = READINGS + c[BLOCK_END]! - 1; i >= first; i--) {
-      const x = s[i]!;
-      if (x < least) least = x;
-      if (x > most) most = x;
-      oldLeast[i - first] = least;
-      oldMost[i - first] = most;
+    let [leastAt, mostAt] = [-1, -1];
+    for (let place = c[BLOCK_END]! - 1; place >= first; place--) {
+      const x = s[READINGS + place]!;
+      if (x < least) {
+        least = x;
+        leastAt = place;
+      }
+      if (x > most) {
+        most = x;
+        mostAt = place;
+      }
+      oldLeast[place - first] = leastAt;
+      oldMost[place - first] = mostAt;
     }
-    if (least < middle[A_LEAST]! || most > middle[A_MOST]!) c[OLD_EXTREME] = 1;
+    if (leastAt >= 0 || mostAt >= 0) c[OLD_EXTREME] = 1;
   }
 
   /** A reading that outlasts the block being written: the middle one of the newest three, so that it is no lone outlier. */
@@ -304,7 +313,7 @@ export class RollingWindow {
   }
 
   /** The arrays of the window alone, for snapshots; with those of the channel written back they restore it. */
-  arrays(): Readonly<Record<string, Float64Array>> {
+  arrays(): Readonly<Record<string, Float64Array | Int32Array>> {
     return { blocks: this.blocks, back: this.back, middle: this.middle, oldLeast: this.oldLeast, oldMost: this.oldMost };
   }
 }

@@ -31,11 +31,11 @@ export const LINE2 = 14;
 export const LINE3 = 15;
 /** Supplementary rules: the value before. */
 export const BEFORE = 16;
-/** Frozen: last value; step to it from the one before; least step seen between unlike readings; such steps seen. */
+/** Frozen: last value; size of the step to it; size below which a step is worth a look; least step seen between unlike readings. */
 export const LAST_VALUE = 17;
 export const STEP = 18;
-export const LEAST_STEP = 19;
-export const STEPS_SEEN = 20;
+export const STEP_BELOW = 19;
+export const LEAST_STEP = 20;
 /** Window: sums of deviations from the anchor and of their squares; of the readings, and what that lost in rounding; the anchor; what the squares may fall to. */
 export const S1 = 21;
 export const S2 = 22;
@@ -76,10 +76,11 @@ export const ZIGZAG = 12;
 export const WITHIN = 13;
 export const OUTSIDE = 14;
 export const SEEN = 15;
-/** Frozen: whether it is watched; repeats of the last value, and at how many they are no longer credible. */
+/** Frozen: whether it is watched; repeats of the last value, and at how many they are no longer credible; steps that were looked at. */
 export const WATCHES_REPEATS = 16;
 export const REPEATS = 17;
 export const REPEATS_NEEDED = 18;
+export const STEPS_SEEN = 24;
 /** Evidence: first place of its rings among the doubles; mask of places; place of the newest. */
 export const EVIDENCE = 19;
 export const EVIDENCE_MASK = 20;
@@ -88,4 +89,4 @@ export const EVIDENCE_NEWEST = 21;
 export const HAS_BAND = 22;
 /** 1 while a silence has been signalled and no reading came since. */
 export const SILENT = 23;
-export const INTEGERS = 24;
+export const INTEGERS = 25;
