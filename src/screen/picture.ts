@@ -1,12 +1,9 @@
-import { formatValue } from '../engine/format.js';
 import { pdf } from '../stats/normal.js';
 import { valueAxis, type Axis } from './axis.js';
+import { axisLabels, drawLabels, GUTTER, gutterOf } from './labels.js';
 import type { ChannelView } from './model.js';
 import type { Raster } from './raster.js';
 import type { Theme } from './theme.js';
-
-export const GUTTER = 10; // columns for the labels of the value axis, at least
-const WIDEST_GUTTER = 20;
 
 /** Columns of the histogram at the right of the picture. */
 export const histogramWidth = (width: number): number => Math.max(14, Math.min(40, Math.floor((width - GUTTER) / 5)));
@@ -34,8 +31,7 @@ export function drawPicture(r: Raster, t: Theme, c: ChannelView, row: number, he
   }
   const aside = histogramWidth(r.width);
   const labels = axisLabels(t, c, axis);
-  // in steps of two, so that a label which gains or loses a digit does not move the picture each time
-  const gutter = Math.min(WIDEST_GUTTER, 2 * Math.ceil(labels.reduce((widest, { text }) => Math.max(widest, text.length + 1), GUTTER) / 2));
+  const gutter = gutterOf(labels);
   const left = gutter * 2;
   const right = r.width * 2 - 1;
   const split = (r.width - aside) * 2;
@@ -141,34 +137,5 @@ function drawHistogram(r: Raster, t: Theme, c: ChannelView, axis: Axis, top: num
     const next = reach(expected(y));
     for (let x = Math.min(last, next); x <= Math.max(last, next); x++) if (next > 0 || last > 0) r.dot(left + x, top + y, t.plain, CURVE);
     last = next;
-  }
-}
-
-interface Label {
-  readonly value: number;
-  readonly text: string;
-  readonly attrs: number;
-}
-
-/** What the axis says, the weightiest first. */
-function axisLabels(t: Theme, { band, tolerance, resolution }: ChannelView, { low, high }: Axis): Label[] {
-  const sigma = band?.sigma ?? (high - low) / 10;
-  const label = (value: number, attrs: number, mark = ''): Label => ({ value, attrs, text: formatValue(value, sigma, resolution) + mark });
-  return [
-    ...(band ? [band.high, band.low, band.centre].map((value) => label(value, t.plain)) : []),
-    ...(tolerance ?? []).map((value) => label(value, t.faint, ' tol')),
-    label(high, t.faint),
-    label(low, t.faint),
-  ].filter(({ value }) => value >= low && value <= high);
-}
-
-/** Each label at its line, flush right; one that is too long is cut where its last digits are, and says so. */
-function drawLabels(r: Raster, labels: readonly Label[], axis: Axis, row: number, height: number, width: number): void {
-  const taken = new Set<number>();
-  for (const { value, text, attrs } of labels) {
-    const at = Math.max(0, Math.min(height - 1, axis.y(value) >> 2));
-    if (taken.has(at)) continue;
-    taken.add(at);
-    r.text(0, row + at, text.padStart(width), attrs, width);
   }
 }
