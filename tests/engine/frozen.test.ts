@@ -33,12 +33,19 @@ describe('the chance of one repeat', () => {
 
 describe('frozen', () => {
   it('judges an unknown resolution from the least step, after twenty steps and not before', () => {
-    const early = [40, 40.5, ...Array.from({ length: 100 }, () => 41)];
-    expect(frozenAt({}, early)).toEqual([]);
-    const walk = Array.from({ length: 21 }, (_, i) => 40 + [0, 0.25, 1][i % 3]!);
-    const late = [...walk, ...Array.from({ length: 40 }, () => 41.5)];
-    expect(frozenAt({ resolution: 0.25 }, late)).not.toEqual([]);
-    expect(frozenAt({}, late)).toEqual(frozenAt({ resolution: 0.25 }, late));
+    const thenStuck = (steps: number): number[] => {
+      const walk = Array.from({ length: steps + 1 }, (_, i) => 40 + [0, 0.25, 1][i % 3]!);
+      return [...walk, ...Array.from({ length: 100 }, () => walk.at(-1)!)];
+    };
+    expect(frozenAt({}, thenStuck(19))).toEqual([]);
+    expect(frozenAt({}, thenStuck(20))).not.toEqual([]);
+    expect(frozenAt({}, thenStuck(20))).toEqual(frozenAt({ resolution: 0.25 }, thenStuck(20)));
+  });
+
+  it('judges anew once a smaller step is seen', () => {
+    const walk = [...Array.from({ length: 29 }, (_, i) => 40 + [0, 0.25, 1][i % 3]!), 40.05]; // from 40.25
+    const stuck = [...walk, ...Array.from({ length: 100 }, () => 40.05)];
+    expect(frozenAt({}, stuck)).toEqual(frozenAt({ resolution: 40.25 - 40.05 }, stuck));
   });
 
   it('says nothing where sigma is far below the resolution: every reading must repeat', () => {
