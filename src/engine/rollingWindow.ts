@@ -48,7 +48,10 @@ let scratch = new Float64Array(512); // for order statistics; shared, since they
  * while it is in the window.
  */
 export class RollingWindow {
-  private readonly blocks: Float64Array;
+  /** Each block as it was last written. */
+  private readonly own: Float64Array;
+  /** Each block of the lap before together with all that follow it. */
+  private readonly suffixes: Float64Array;
   private readonly back = new Float64Array(FIELDS);
   private readonly middle = new Float64Array(FIELDS);
   /** Where the old block holds an extreme: the place of the extreme from each of its places on; -1: in the middle. */
@@ -66,7 +69,8 @@ export class RollingWindow {
     private readonly c: Int32Array,
   ) {
     this.blockSize = Math.max(1, Math.min(Math.round(4.5 * Math.sqrt(size)), size >> 2));
-    this.blocks = new Float64Array((1 + Math.ceil((size - 1) / this.blockSize)) * FIELDS);
+    this.own = new Float64Array((1 + Math.ceil((size - 1) / this.blockSize)) * FIELDS);
+    this.suffixes = new Float64Array(this.own.length);
     this.oldLeast = new Int32Array(this.blockSize);
     this.oldMost = new Int32Array(this.blockSize);
     this.middle[A_LEAST] = Infinity;
@@ -114,21 +118,20 @@ export class RollingWindow {
   attend(): void {
     const { s, c } = this;
     if (c[NEXT] === c[BLOCK_END]) this.nextBlock();
-    s[ANCHOR] = this.anchor();
-    this.sumAnew();
+    else this.sumAnew();
+    s[FLOOR] = s[S2]! * MAY_FALL_TO;
   }
 
-  /** Puts the block just written away and opens the next one. */
+  /** Puts the block just written away and opens the next one, with sums from the aggregates. */
   private nextBlock(): void {
-    const { s, c, blocks, back, middle, size } = this;
-    const base = c[BLOCK]! * FIELDS;
-    this.summarise(base);
+    const { s, c, own, suffixes, back, middle, size } = this;
+    this.summarise(c[BLOCK]! * FIELDS);
     if (c[BLOCK_END]! < size) {
-      join(back, 0, blocks, base);
+      join(back, 0, own, c[BLOCK]! * FIELDS);
       c[BLOCK]!++;
     } else {
-      // A lap is done: each of its blocks takes in all that follow it, for the middles of the next lap.
-      for (let b = blocks.length - 2 * FIELDS; b >= 0; b -= FIELDS) join(blocks, b, blocks, b + FIELDS);
+      suffixes.set(own);
+      for (let b = own.length - 2 * FIELDS; b >= 0; b -= FIELDS) join(suffixes, b, suffixes, b + FIELDS);
       back[A_N] = 0;
       c[BLOCK] = 0;
       c[NEXT] = 0;
@@ -136,39 +139,99 @@ export class RollingWindow {
     }
     c[BLOCK_BEGIN] = c[NEXT]!;
     c[BLOCK_END] = c[BLOCK] === 0 ? 1 : Math.min(c[NEXT]! + this.blockSize, size);
+    const old = c[BLOCK]! * FIELDS;
+    middle[A_N] = 0;
+    if (c[FULL] === 1 && old + FIELDS < own.length) join(middle, 0, suffixes, old + FIELDS);
+    if (back[A_N]! > 0) join(middle, 0, back, 0);
+
+    this.clear();
     s[FRESH_SUM] = 0;
     s[FRESH_LOST] = 0;
     s[FRESH_LEAST] = Infinity;
     s[FRESH_MOST] = -Infinity;
-    middle[A_N] = 0;
-    const next = (c[BLOCK]! + 1) * FIELDS;
-    if (c[FULL] === 1 && next < blocks.length) join(middle, 0, blocks, next);
-    if (back[A_N]! > 0) join(middle, 0, back, 0);
-    this.findOldExtremes();
+    this.add(middle, 0);
+    c[OLD_EXTREME] = 0;
+    if (c[FULL] === 0) return;
+    this.add(own, old);
+    if (own[old + A_LEAST]! < middle[A_LEAST]! || own[old + A_MOST]! > middle[A_MOST]!) this.findOldExtremes();
+  }
+
+  /** Sums of nothing, about a new anchor. */
+  private clear(): void {
+    const { s } = this;
+    this.setAnchor();
+    s[S1] = 0;
+    s[S2] = 0;
+    s[SUM] = 0;
+    s[LOST] = 0;
+    s[FRESH_S1] = 0;
+    s[FRESH_S2] = 0;
+  }
+
+  /** Adds an aggregate, which may be empty, to the sums. */
+  private add(aggregate: Float64Array, at: number): void {
+    const { s } = this;
+    const n = aggregate[at + A_N]!;
+    if (n === 0) return;
+    const apart = aggregate[at + A_ANCHOR]! - s[ANCHOR]! + aggregate[at + A_OFFSET]!;
+    s[S1]! += n * apart;
+    s[S2]! += aggregate[at + A_M2]! + n * apart * apart;
+    const sum = s[SUM]!;
+    const x = aggregate[at + A_SUM]!;
+    s[SUM] = sum + x;
+    s[LOST]! += roundingError(sum, x, sum + x) + aggregate[at + A_LOST]!;
+  }
+
+  /** Sums of the readings that fresh and old hold now, and of the middle. */
+  private sumAnew(): void {
+    const { s, c } = this;
+    this.clear();
+    const anchor = s[ANCHOR]!;
+    const next = READINGS + c[NEXT]!;
+    for (let i = READINGS + c[BLOCK_BEGIN]!; i < next; i++) {
+      const d = s[i]! - anchor;
+      s[FRESH_S1]! += d;
+      s[FRESH_S2]! += d * d;
+    }
+    s[S1] = s[FRESH_S1]!;
+    s[S2] = s[FRESH_S2]!;
+    s[SUM] = s[FRESH_SUM]!;
+    s[LOST] = s[FRESH_LOST]!;
+    const end = c[FULL] === 1 ? READINGS + c[BLOCK_END]! : next;
+    for (let i = next; i < end; i++) {
+      const x = s[i]!;
+      const d = x - anchor;
+      s[S1] += d;
+      s[S2] += d * d;
+      const sum: number = s[SUM];
+      s[SUM] = sum + x;
+      s[LOST] += roundingError(sum, x, sum + x);
+    }
+    this.add(this.middle, 0);
   }
 
   /** The aggregate of the block just written, from its sums where these do. */
   private summarise(base: number): void {
-    const { s, c, blocks } = this;
+    const { s, c, own } = this;
     const n = c[BLOCK_END]! - c[BLOCK_BEGIN]!;
     const s1 = s[FRESH_S1]!;
     const s2 = s[FRESH_S2]!;
     const m2 = s2 - (s1 * s1) / n;
-    blocks[base + A_N] = n;
-    blocks[base + A_ANCHOR] = s[ANCHOR]!;
-    blocks[base + A_OFFSET] = s1 / n;
-    blocks[base + A_M2] = m2;
-    blocks[base + A_SUM] = s[FRESH_SUM]!;
-    blocks[base + A_LOST] = s[FRESH_LOST]!;
-    blocks[base + A_LEAST] = s[FRESH_LEAST]!;
-    blocks[base + A_MOST] = s[FRESH_MOST]!;
+    own[base + A_N] = n;
+    own[base + A_ANCHOR] = s[ANCHOR]!;
+    own[base + A_OFFSET] = s1 / n;
+    own[base + A_M2] = m2;
+    own[base + A_SUM] = s[FRESH_SUM]!;
+    own[base + A_LOST] = s[FRESH_LOST]!;
+    own[base + A_LEAST] = s[FRESH_LEAST]!;
+    own[base + A_MOST] = s[FRESH_MOST]!;
     if (!(m2 > s2 * ENOUGH)) this.sumBlockAnew(base);
   }
 
   /** Deviations once more, about the block's own mean: the anchor was so far from it that the difference lost digits. */
   private sumBlockAnew(base: number): void {
-    const { s, c, blocks } = this;
-    const n = blocks[base + A_N]!;
+    const { s, c, own } = this;
+    const n = own[base + A_N]!;
     const anchor = s[FRESH_SUM]! / n;
     let s1 = 0;
     let s2 = 0;
@@ -177,20 +240,20 @@ export class RollingWindow {
       s1 += d;
       s2 += d * d;
     }
-    blocks[base + A_ANCHOR] = anchor;
-    blocks[base + A_OFFSET] = s1 / n;
-    blocks[base + A_M2] = Math.max(0, s2 - (s1 * s1) / n);
+    own[base + A_ANCHOR] = anchor;
+    own[base + A_OFFSET] = s1 / n;
+    own[base + A_M2] = Math.max(0, s2 - (s1 * s1) / n);
   }
 
-  /** Whether the block about to be overwritten holds an extreme of the window, and where, from each of its places on. */
+  /** Where the extremes of the block about to be overwritten are, from each of its places on. */
   private findOldExtremes(): void {
     const { s, c, middle, oldLeast, oldMost } = this;
-    c[OLD_EXTREME] = 0;
-    if (c[FULL] === 0) return;
+    c[OLD_EXTREME] = 1;
     const first = c[BLOCK_BEGIN]!;
     let least = middle[A_LEAST]!;
     let most = middle[A_MOST]!;
-    let [leastAt, mostAt] = [-1, -1];
+    let leastAt = -1;
+    let mostAt = -1;
     for (let place = c[BLOCK_END]! - 1; place >= first; place--) {
       const x = s[READINGS + place]!;
       if (x < least) {
@@ -204,61 +267,18 @@ export class RollingWindow {
       oldLeast[place - first] = leastAt;
       oldMost[place - first] = mostAt;
     }
-    if (leastAt >= 0 || mostAt >= 0) c[OLD_EXTREME] = 1;
   }
 
-  /** A reading that outlasts the block being written: the middle one of the newest three, so that it is no lone outlier. */
-  private anchor(): number {
-    const { s, size } = this;
-    const last = this.c[NEXT]! + size - 1;
-    const a = s[READINGS + (last % size)]!;
-    if (this.length < 3 || size < 4) return a;
-    const b = s[READINGS + ((last - 1) % size)]!;
-    const c = s[READINGS + ((last - 2) % size)]!;
-    return Math.max(Math.min(a, b), Math.min(Math.max(a, b), c));
-  }
-
-  /** Makes the sums anew about the anchor: of the fresh readings, of the old ones that are left, of the middle. */
-  private sumAnew(): void {
-    const { s, c, middle } = this;
-    const anchor = s[ANCHOR]!;
-    const next = READINGS + c[NEXT]!;
-    let s1 = 0;
-    let s2 = 0;
-    for (let i = READINGS + c[BLOCK_BEGIN]!; i < next; i++) {
-      const d = s[i]! - anchor;
-      s1 += d;
-      s2 += d * d;
-    }
-    s[FRESH_S1] = s1;
-    s[FRESH_S2] = s2;
-    let sum = s[FRESH_SUM]!;
-    let lost = s[FRESH_LOST]!;
-    const end = c[FULL] === 1 ? READINGS + c[BLOCK_END]! : next;
-    for (let i = next; i < end; i++) {
-      const x = s[i]!;
-      const d = x - anchor;
-      s1 += d;
-      s2 += d * d;
-      const total = sum + x;
-      lost += roundingError(sum, x, total);
-      sum = total;
-    }
-    const n = middle[A_N]!;
-    if (n > 0) {
-      const apart = middle[A_ANCHOR]! - anchor + middle[A_OFFSET]!;
-      s1 += n * apart;
-      s2 += middle[A_M2]! + n * apart * apart;
-      const x = middle[A_SUM]!;
-      const total = sum + x;
-      lost += roundingError(sum, x, total) + middle[A_LOST]!;
-      sum = total;
-    }
-    s[S1] = s1;
-    s[S2] = s2;
-    s[SUM] = sum;
-    s[LOST] = lost;
-    s[FLOOR] = s2 * MAY_FALL_TO;
+  /** The anchor: a reading that outlasts the block being written, the middle one of the newest three, so that it is no lone outlier. */
+  private setAnchor(): void {
+    const { s, c, size } = this;
+    const last = c[NEXT]! + size - 1;
+    const x = s[READINGS + (last % size)]!;
+    s[ANCHOR] = x;
+    if (this.length < 3 || size < 4) return;
+    const y = s[READINGS + ((last - 1) % size)]!;
+    const z = s[READINGS + ((last - 2) % size)]!;
+    s[ANCHOR] = Math.max(Math.min(x, y), Math.min(Math.max(x, y), z));
   }
 
   /** Copies the newest `min(length, out.length)` readings, oldest first. @returns how many */
@@ -314,7 +334,7 @@ export class RollingWindow {
 
   /** The arrays of the window alone, for snapshots; with those of the channel written back they restore it. */
   arrays(): Readonly<Record<string, Float64Array | Int32Array>> {
-    return { blocks: this.blocks, back: this.back, middle: this.middle, oldLeast: this.oldLeast, oldMost: this.oldMost };
+    return { own: this.own, suffixes: this.suffixes, back: this.back, middle: this.middle, oldLeast: this.oldLeast, oldMost: this.oldMost };
   }
 }
 
