@@ -60,4 +60,20 @@ describe('mean and sd of the window', () => {
       { seed: 21, numRuns: 150 },
     );
   });
+
+  it('go on from a snapshot at any reading as if nothing had been, to the last bit', () => {
+    fc.assert(
+      fc.property(fc.integer({ min: 2, max: 90 }), nasty, fc.nat(300), (window, readings, cut) => {
+        const live = new Channel(spec({ window, rules: [] }));
+        let restored = new Channel(live.spec);
+        readings.forEach((reading, i) => {
+          live.take(i, reading);
+          restored.take(i, reading);
+          if (i === cut) restored = Channel.restore(live.spec, restored.snapshot());
+          expect([restored.mean(), restored.sd(), restored.min(), restored.max()]).toEqual([live.mean(), live.sd(), live.min(), live.max()]);
+        });
+      }),
+      { seed: 22, numRuns: 60 },
+    );
+  });
 });
