@@ -1,6 +1,7 @@
 import { formatDuration } from '../engine/format.js';
 import type { Kept } from '../stand/runtime.js';
 import { requireTextbook } from '../stand/budget.js';
+import { closeDeadTerminalsAtExit } from '../screen/terminalGone.js';
 import { loadStand } from '../stand/load.js';
 import { UserError } from '../text/errors.js';
 import { FAULT, FINE, leaveSoon, parse, verb } from './cli.js';
@@ -56,6 +57,7 @@ export async function guard(standRun: StandRun, program: ProgramLog, until?: num
   const onHangUp = (): void => log.rotate();
   process.on('SIGHUP', onHangUp);
   let timer: NodeJS.Timeout | undefined;
+  closeDeadTerminalsAtExit();
   const ending = new Promise<string>((resolve) => {
     for (const signal of ['SIGTERM', 'SIGINT'] as const) process.once(signal, () => resolve(`ended by ${signal}`));
     if (until !== undefined) timer = setTimeout(() => resolve('the time asked for is over'), until);

@@ -15,10 +15,11 @@ export function formatValue(value: number, sigma: number | null = null, resoluti
   return value.toFixed(digits);
 }
 
-/** Without a tail of zeros, and without an exponent that is not needed. */
+/** Without a tail of zeros in the fraction, and without a plus in the exponent, whose own zeros stay. */
 function trim(text: string): string {
-  if (!text.includes('.')) return text;
-  return text.replace(/\.?0+(?=e|$)/, '').replace('e+', 'e');
+  const [mantissa = '', exponent] = text.split('e');
+  const short = mantissa.includes('.') ? mantissa.replace(/\.?0+$/, '') : mantissa;
+  return exponent === undefined ? short : `${short}e${exponent.replace('+', '')}`;
 }
 
 /** Odds as "1 in 15 800": three significant digits, thousands set apart; "1 in 4e12" when that is longer than useful. */
