@@ -2,7 +2,7 @@ import type { Wanted } from '../source.js';
 import type { LineDecoder } from './lineDecoder.js';
 import { readJsonNumber } from './number.js';
 import { follow, parsePointer, type Pointer } from './pointer.js';
-import { parseTime } from './time.js';
+import { readJsonTime } from './time.js';
 
 /**
  * Lines that are one JSON document each. A channel's field is a key of it, or a JSON pointer when it begins with `/`;
@@ -28,7 +28,7 @@ export function compileJson(wanted: readonly Wanted[]): LineDecoder {
       for (let i = 0; i < values.length; i++) {
         const value = follow(document, values[i]!);
         const pointer = times[i];
-        const time = pointer ? readTime(follow(document, pointer)) : NaN;
+        const time = pointer ? readJsonTime(follow(document, pointer)) : NaN;
         if (value === undefined) refuse('missing-field', bytes, start, end);
         else if (!readJsonNumber(value, out)) refuse('not-a-number', bytes, start, end);
         else if (pointer && Number.isNaN(time)) refuse('bad-time', bytes, start, end);
@@ -41,8 +41,4 @@ export function compileJson(wanted: readonly Wanted[]): LineDecoder {
 function pointerOf(field: string | null): string {
   if (field === null) return '';
   return field.startsWith('/') ? field : `/${field.replaceAll('~', '~0').replaceAll('/', '~1')}`;
-}
-
-function readTime(value: unknown): number {
-  return typeof value === 'string' || typeof value === 'number' ? parseTime(value) : NaN;
 }

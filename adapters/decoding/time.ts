@@ -27,6 +27,11 @@ export function parseTime(time: string | number): number {
   return EPOCH.test(text) ? epoch(Number(text)) : NaN;
 }
 
+/** A time from a parsed JSON value: a number or a string by {@link parseTime}; NaN where it is anything else. */
+export function readJsonTime(value: unknown): number {
+  return typeof value === 'string' || typeof value === 'number' ? parseTime(value) : NaN;
+}
+
 function epoch(value: number): number {
   const size = Math.abs(value);
   if (!(size < NO_TIME_FROM)) return NaN;

@@ -4,6 +4,7 @@ import { clean } from '../../src/text/clean.js';
 import type { Fault, Sink, Wanted } from '../source.js';
 import { Routes } from './routes.js';
 import { Tap } from './tap.js';
+import { topicFault } from './topicFault.js';
 
 const SAMPLE = 120; // bytes of a refused payload handed on
 
@@ -90,7 +91,7 @@ const sample = (payload: Buffer): string => payload.toString('utf8', 0, SAMPLE);
 function topicOf({ channel, topic }: Wanted): string {
   const name = clean(channel, 60);
   if (topic === null || topic === '') throw new UserError(`The channel ${name} names no topic.`, "Write 'topic: cell3/bearing/temperature'.");
-  if (topic.startsWith('$share/'))
-    throw new UserError(`The channel ${name} shares its subscription with other clients, and would miss readings.`, 'Give the topic without $share.');
+  const wrong = topicFault(topic);
+  if (wrong) throw new UserError(`The topic of ${name} ${wrong}.`, "Give a topic or a filter: '+' stands for one level, '#' for all that follow.");
   return topic;
 }

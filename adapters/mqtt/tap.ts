@@ -1,6 +1,6 @@
 import { readJsonNumber, readNumber } from '../decoding/number.js';
 import { follow, parsePointer, type Pointer } from '../decoding/pointer.js';
-import { parseTime } from '../decoding/time.js';
+import { readJsonTime } from '../decoding/time.js';
 import type { Fault, Wanted } from '../source.js';
 import { SequenceGate } from './sequenceGate.js';
 
@@ -44,7 +44,7 @@ export class Tap {
     if (this.time === null) return null;
     const at = follow(document, this.time);
     if (at === undefined) return 'missing-field';
-    out[1] = typeof at === 'number' || typeof at === 'string' ? parseTime(at) : NaN;
+    out[1] = readJsonTime(at);
     return Number.isNaN(out[1]) ? 'bad-time' : null;
   }
 

@@ -4,11 +4,10 @@ import { join } from 'node:path';
 import { stdinSource } from '../../adapters/stdin/source.js';
 import type { MqttOptions, StdinOptions } from '../../adapters/options.js';
 import type { Source } from '../../adapters/source.js';
-import { mqttSource } from '../../adapters/mqtt/source.js';
 import { DEMO_CHANNELS, LINE_CHANNELS, type DemoChannel } from '../../adapters/simulated/demoChannels.js';
 import { startDemoRig, type DemoRig } from '../../adapters/simulated/demoRig.js';
 import { formatDuration } from '../engine/format.js';
-import { wantedBySource } from '../stand/open.js';
+import { openSource, wantedBySource } from '../stand/open.js';
 import { standPrice } from '../stand/price.js';
 import { parseDuration } from '../stand/quantities.js';
 import type { ChannelConfig, Stand } from '../stand/types.js';
@@ -33,9 +32,9 @@ export async function run(args: readonly string[]): Promise<number> {
   const until = options.for === undefined ? undefined : parseDuration(options.for);
   if (until === null) throw new UserError(`'${clean(options.for, 40)}' is no time.`, "Write such as '30s' or '5 min'.");
   if (!options.headless) (await import('../screen/shell.js')).checkTerminal(process.env, process.stdin, process.stdout);
-  const stand = demoStand(options.log ?? join(mkdtempSync(join(tmpdir(), 'kilter-demo-')), 'alarms.jsonl'));
   const rig = await startDemoRig({ seed });
   try {
+    const stand = demoStand(options.log ?? join(mkdtempSync(join(tmpdir(), 'kilter-demo-')), 'alarms.jsonl'), rig.url);
     return await (options.headless ? headless(stand, rig, until) : onScreen(stand, rig, until));
   } finally {
     await rig.stop();
@@ -45,7 +44,7 @@ export async function run(args: readonly string[]): Promise<number> {
 async function headless(stand: Stand, rig: DemoRig, until: number | undefined): Promise<number> {
   const [{ guard, programListener }, { ProgramLog }, { standRun }] = await Promise.all([import('./guard.js'), import('./programLog.js'), import('./standRun.js')]);
   const program = new ProgramLog();
-  return guard(await standRun(stand, programListener(program), 0, sourcesOf(stand, rig)), program, until);
+  return guard(await standRun(stand, programListener(program), 0, await sourcesOf(stand, rig)), program, until);
 }
 
 async function onScreen(stand: Stand, rig: DemoRig, until: number | undefined): Promise<number> {
@@ -53,21 +52,21 @@ async function onScreen(stand: Stand, rig: DemoRig, until: number | undefined): 
   const price = standPrice(stand);
   const quiet = `nothing is wrong now (a false alarm is due once in ${price === null ? 'an unknown time' : formatDuration(price)})`;
   return watch(stand, {
-    sources: sourcesOf(stand, rig),
+    sources: await sourcesOf(stand, rig),
     notice: () => `demo: ${rig.faultNow() ?? quiet}`,
     ...(until !== undefined && { until }),
   });
 }
 
 /** The stand of the demo: a stand like any other, only that it is made here and not read from a file. */
-export function demoStand(logFile: string): Stand {
+function demoStand(logFile: string, brokerUrl: string): Stand {
   return {
     file: 'demo',
     name: 'Coolant pump endurance cell',
     limits: 'textbook',
     budget: null,
     sources: [
-      { name: 'bus', kind: 'mqtt', options: mqttOptions('mqtt://127.0.0.1:0') },
+      { name: 'bus', kind: 'mqtt', options: mqttOptions(brokerUrl) },
       { name: 'logger', kind: 'stdin', options: LINES },
     ],
     channels: DEMO_CHANNELS.map(channelConfig),
@@ -82,12 +81,15 @@ function channelConfig({ over, topic, value, field, learn, ...watched }: DemoCha
   };
 }
 
-function sourcesOf(stand: Stand, rig: DemoRig): Source[] {
-  const wanted = wantedBySource(stand.channels);
-  return [
-    mqttSource('bus', mqttOptions(rig.url), wanted.get('bus')!),
-    stdinSource('logger', LINES, wanted.get('logger')!, rig.lineStream),
-  ];
+/** The stand's sources, save that its standard input is the rig's line. */
+function sourcesOf({ sources, channels }: Stand, { lineStream }: DemoRig): Promise<Source[]> {
+  const wanted = wantedBySource(channels);
+  return Promise.all(
+    sources.map(async (config) => {
+      const own = wanted.get(config.name) ?? [];
+      return config.kind === 'stdin' ? stdinSource(config.name, config.options, own, lineStream) : openSource(config, own);
+    }),
+  );
 }
 
 function mqttOptions(url: string): MqttOptions {

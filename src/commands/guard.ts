@@ -1,12 +1,10 @@
 import { formatDuration } from '../engine/format.js';
 import type { Kept } from '../stand/runtime.js';
-import { requireTextbook } from '../stand/budget.js';
 import { closeDeadTerminalsAtExit } from '../screen/terminalGone.js';
-import { loadStand } from '../stand/load.js';
 import { UserError } from '../text/errors.js';
 import { FAULT, FINE, leaveSoon, parse, verb } from './cli.js';
 import { ProgramLog } from './programLog.js';
-import { standRun, type StandListener, type StandRun } from './standRun.js';
+import { standRun, standToWatch, type StandListener, type StandRun } from './standRun.js';
 
 const STATUS_EACH = 60_000;
 const CAUTION = 'kilter is no safety system: interlocks, relief devices, local codes and licensed practice come first.';
@@ -19,13 +17,10 @@ export async function run(args: readonly string[]): Promise<number> {
     .addHelpText('after', `\nTERM or INT ends it (status 0, all alarms on disk); HUP begins a new alarm log file.\n${CAUTION}`);
   const done = parse(command, args);
   if (done !== null) return done;
-  const stand = loadStand(command.args[0]!);
-  requireTextbook(stand);
-  const { log } = command.opts<{ log?: string }>();
-  const chosen = log === undefined ? stand : { ...stand, log: { ...stand.log, file: log } };
+  const stand = standToWatch(command);
   const program = new ProgramLog();
   program.write('notice', CAUTION);
-  return guard(await standRun(chosen, programListener(program), 0), program);
+  return guard(await standRun(stand, programListener(program), 0), program);
 }
 
 /** What the program log says of a stand. */

@@ -1,9 +1,12 @@
 import { createHash } from 'node:crypto';
 import { readFileSync } from 'node:fs';
+import type { Command } from 'commander';
 import type { Source } from '../../adapters/source.js';
 import { AlarmLog } from '../record/alarmLog.js';
 import { AlarmBook } from '../stand/alarmBook.js';
+import { requireTextbook } from '../stand/budget.js';
 import { Clock } from '../stand/clock.js';
+import { loadStand } from '../stand/load.js';
 import { openSource, wantedBySource } from '../stand/open.js';
 import { Runtime, type Kept } from '../stand/runtime.js';
 import type { SourceState } from '../stand/sourceState.js';
@@ -24,6 +27,17 @@ export interface StandRun {
   readonly runtime: Runtime;
   readonly book: AlarmBook;
   readonly log: AlarmLog;
+}
+
+/**
+ * The stand that a live verb was asked to watch: its argument, with the alarm log that `--log` names.
+ * @throws UserError where the file has faults, or asks for what this version has not
+ */
+export function standToWatch(command: Command): Stand {
+  const stand = loadStand(command.args[0]!);
+  requireTextbook(stand);
+  const { log } = command.opts<{ log?: string }>();
+  return log === undefined ? stand : { ...stand, log: { ...stand.log, file: log } };
 }
 
 /**

@@ -1,3 +1,5 @@
+import type { Channel } from '../engine/channel.js';
+import type { AlarmRaised } from '../engine/events.js';
 import type { AlarmView, ChannelView, StandView } from '../screen/model.js';
 import type { AlarmBook } from '../stand/alarmBook.js';
 import type { Post, Runtime } from '../stand/runtime.js';
@@ -7,7 +9,7 @@ import { twoSided } from '../stats/normal.js';
 export class StandViewer {
   private readonly trends: { values: Float64Array; times: Float64Array }[];
   private selected: string | null = null;
-  private readonly startedAt: number;
+  private readonly channels: ReadonlyMap<string, Channel>;
   private rateAt: number;
   private rateCount = 0;
   private rate = 0;
@@ -25,7 +27,8 @@ export class StandViewer {
     private readonly notice: () => string | null,
   ) {
     this.trends = runtime.posts.map(() => ({ values: new Float64Array(trend), times: new Float64Array(trend) }));
-    this.startedAt = this.rateAt = runtime.clock.now();
+    this.rateAt = runtime.clock.now();
+    this.channels = new Map(runtime.posts.map(({ channel }) => [channel.spec.channel, channel]));
   }
 
   select(channel: string): void {
@@ -37,7 +40,7 @@ export class StandViewer {
     const now = runtime.clock.now();
     this.measureRate(now);
     const alarms = book.list().map(
-      ({ raised, clearedAt }): AlarmView => ({
+      ({ raised, cleared }): AlarmView => ({
         alarm: raised.alarm,
         channel: raised.channel,
         detector: raised.detector,
@@ -45,19 +48,17 @@ export class StandViewer {
         sentence: raised.sentence,
         odds: raised.odds,
         since: raised.time,
-        signals: this.signalsOf(raised.channel, raised.alarm),
-        clearedAt,
+        signals: cleared?.signals ?? this.signalsSoFar(raised),
+        clearedAt: cleared?.time ?? null,
       }),
     );
     return {
       stand: this.stand,
       now,
-      startedAt: this.startedAt,
       channels: runtime.posts.map((post, slot) => this.channel(post, slot)),
       alarms,
       sources: runtime.sources.map(({ name, phase, sentence, faultCount }) => ({ source: name, phase, sentence, faults: faultCount })),
       rate: this.rate,
-      readings: runtime.readings,
       logTrouble: this.logTrouble,
       notice: this.notice(),
     };
@@ -91,9 +92,8 @@ export class StandViewer {
     };
   }
 
-  private signalsOf(channel: string, alarm: string): number {
-    const post = this.runtime.posts.find(({ channel: { spec } }) => spec.channel === channel);
-    return post?.channel.alarms.find((active) => active.alarm === alarm)?.signals ?? 1;
+  private signalsSoFar({ channel, alarm }: AlarmRaised): number {
+    return this.channels.get(channel)?.alarms.find((active) => active.alarm === alarm)?.signals ?? 1;
   }
 
   private measureRate(now: number): void {

@@ -1,10 +1,8 @@
-import { requireTextbook } from '../stand/budget.js';
-import { loadStand } from '../stand/load.js';
 import { watchPrice } from '../stand/price.js';
 import type { Stand } from '../stand/types.js';
 import { FINE, leaveSoon, parse, verb } from './cli.js';
 import { StandViewer } from './standView.js';
-import { standRun, type StandListener } from './standRun.js';
+import { standRun, standToWatch, type StandListener } from './standRun.js';
 import type { Source } from '../../adapters/source.js';
 
 /** Readings of each channel that the screen's pictures may show. */
@@ -17,10 +15,7 @@ export async function run(args: readonly string[]): Promise<number> {
     .option('--log <file>', 'the alarm log, instead of the one the stand file names');
   const done = parse(command, args);
   if (done !== null) return done;
-  const stand = loadStand(command.args[0]!);
-  requireTextbook(stand);
-  const { log } = command.opts<{ log?: string }>();
-  return watch(log === undefined ? stand : { ...stand, log: { ...stand.log, file: log } });
+  return watch(standToWatch(command));
 }
 
 /**

@@ -54,14 +54,12 @@ export interface SourceView {
 export interface StandView {
   readonly stand: string;
   readonly now: number;
-  readonly startedAt: number;
   readonly channels: readonly ChannelView[];
   /** Standing first, newest first; then lately cleared ones. */
   readonly alarms: readonly AlarmView[];
   readonly sources: readonly SourceView[];
   /** Readings a second, all channels. */
   readonly rate: number;
-  readonly readings: number;
   /** null while the alarm log is well; else a sentence (disk full ...). */
   readonly logTrouble: string | null;
   /** Lasting words for the status line (such as: limits textbook, what that costs); null: none. */

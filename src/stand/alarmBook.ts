@@ -1,10 +1,10 @@
-import type { AlarmRaised } from '../engine/events.js';
+import type { AlarmCleared, AlarmRaised } from '../engine/events.js';
 import type { Kept } from './runtime.js';
 
-/** One alarm as it stands: what was raised, and since when it is over. */
+/** One alarm as it stands: what was raised, and how it ended; null while it stands. */
 export interface BookedAlarm {
   readonly raised: AlarmRaised;
-  clearedAt: number | null;
+  cleared: AlarmCleared | null;
 }
 
 const REMEMBERED = 200; // cleared alarms; the alarm log keeps them all
@@ -18,12 +18,12 @@ export class AlarmBook {
   take(event: Kept): void {
     if (event.event === 'raised') {
       this.raisedCount++;
-      this.standing.set(event.alarm, { raised: event, clearedAt: null });
+      this.standing.set(event.alarm, { raised: event, cleared: null });
     } else if (event.event === 'cleared') {
       const alarm = this.standing.get(event.alarm);
       if (!alarm) return;
       this.standing.delete(event.alarm);
-      alarm.clearedAt = event.time;
+      alarm.cleared = event;
       this.cleared.unshift(alarm);
       if (this.cleared.length > REMEMBERED) this.cleared.pop();
     }

@@ -1,3 +1,4 @@
+import { topicFault } from '../../adapters/mqtt/topicFault.js';
 import { dirname, resolve } from 'node:path';
 import { parsePointer } from '../../adapters/decoding/pointer.js';
 import { INSTRUMENTS, instrumentAt } from '../../adapters/simulated/cell.js';
@@ -10,7 +11,6 @@ import type { StandFault } from './faults.js';
 import { learnCount, parseDuration, splitOnce } from './quantities.js';
 import type { ChannelEntry, SourceEntry, StandFile } from './schema.js';
 import { clashes, sourceFaults, userFault, type Report } from './sourceCheck.js';
-import { topicFault } from './topic.js';
 
 const MOST = 1_000_000; // readings to learn from: more than a day at ten a second
 const FEWEST = 20; // readings below which a learned sigma is uncertain by more than 16 %

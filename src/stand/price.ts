@@ -29,9 +29,20 @@ const ZONE_PATTERNS: readonly string[] = [
 export function price({ rules, k, sideRun, every }: ChannelSpec): Price | null {
   const zone = rules.filter((rule): rule is ZonePattern => ZONE_PATTERNS.includes(rule));
   if (zone.length === 0) return null;
-  // One rule alone has a closed form, which needs no chain.
-  const readings = zone.length === 1 && zone[0] === 'one-beyond-3' ? 1 / (2 * upperTail(k)) : zoneArl(zone, k / 3, sideRun);
+  const readings = meanRunLength(zone, k, sideRun);
   return { readings, time: every === null ? null : readings * every, without: rules.filter((rule) => !ZONE_PATTERNS.includes(rule)) };
+}
+
+const solved = new Map<string, number>(); // most channels of a stand have the same rules
+
+function meanRunLength(rules: readonly ZonePattern[], k: number, sideRun: number): number {
+  if (rules.length === 1 && rules[0] === 'one-beyond-3') return 1 / (2 * upperTail(k)); // a closed form, which needs no chain
+  const key = `${rules.join()} ${k} ${sideRun}`;
+  const known = solved.get(key);
+  if (known !== undefined) return known;
+  const readings = zoneArl(rules, k / 3, sideRun);
+  solved.set(key, readings);
+  return readings;
 }
 
 /** Mean time between false alarms of the whole stand, in ms; null where a channel's interval is not known. */

@@ -5,7 +5,7 @@ import type { Fault, Wanted } from '../../adapters/source.js';
 import { Channel } from '../engine/channel.js';
 import type { EngineEvent } from '../engine/events.js';
 import type { ChannelSpec } from '../engine/spec.js';
-import { silenceBefore } from './silence.js';
+import { tickBefore } from './silence.js';
 
 /** What a replay tells while it runs, in the order of the recording. */
 export interface ReplayListener {
@@ -56,6 +56,9 @@ export async function replay(
   let readings = 0;
   let newest = -Infinity;
   const { onReading } = listener;
+  const tell = (events: readonly EngineEvent[]): void => {
+    if (events.length > 0) listener.onEvents(events);
+  };
   const bytes = await recordingBytes(path);
   const reader = new RecordingReader(
     wanted,
@@ -64,10 +67,8 @@ export async function replay(
         const channel = channels[slot]!;
         readings++;
         if (time > newest) newest = time;
-        const gap = silenceBefore(channel, time);
-        if (gap !== null) listener.onEvents(channel.tick(gap));
-        const events = channel.take(time, value);
-        if (events.length > 0) listener.onEvents(events);
+        tell(tickBefore(channel, time));
+        tell(channel.take(time, value));
         if (onReading) onReading(channel, time);
       },
       fault: (fault, sample) => listener.onFault(fault, sample),
@@ -80,9 +81,6 @@ export async function replay(
     await (listener.drained() ?? turn());
   }
   reader.end(bytes.torn() !== null);
-  for (const channel of channels) {
-    const gap = silenceBefore(channel, newest);
-    if (gap !== null) listener.onEvents(channel.tick(gap));
-  }
+  for (const channel of channels) tell(tickBefore(channel, newest));
   return { channels, readings, torn: bytes.torn(), timed: reader.timed ?? false, absent: reader.absent };
 }

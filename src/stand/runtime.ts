@@ -6,7 +6,7 @@ import { toWire } from '../record/wire.js';
 import { clean } from '../text/clean.js';
 import type { Clock } from './clock.js';
 import { History } from './history.js';
-import { silenceBefore } from './silence.js';
+import { tickBefore } from './silence.js';
 import { SourceState } from './sourceState.js';
 import type { ChannelConfig } from './types.js';
 
@@ -21,7 +21,6 @@ export interface Post {
   arrived: number;
   /** A retained value from before the connection, until a new reading comes. */
   stale: { readonly time: number; readonly value: number } | null;
-  readings: number;
 }
 
 export interface RuntimeOptions {
@@ -50,9 +49,8 @@ export class Runtime {
   readonly posts: readonly Post[];
   readonly sources: readonly SourceState[];
   readonly clock: Clock;
-  /** Readings of all channels so far, and signals of all detectors. */
+  /** Readings of all channels so far. */
   readings = 0;
-  signals = 0;
   private undurable = 0;
   private timers: NodeJS.Timeout[] = [];
   private readonly live: boolean[];
@@ -65,7 +63,6 @@ export class Runtime {
       history: options.history > 0 ? new History(options.history) : null,
       arrived: NaN,
       stale: null,
-      readings: 0,
     }));
     this.live = options.channels.map(({ origin }) => !options.ownTime.has(origin.source));
     this.sources = options.sources.map((source) => new SourceState(source.name));
@@ -108,10 +105,7 @@ export class Runtime {
 
   private keep(events: readonly EngineEvent[]): void {
     for (const event of events) {
-      if (event.event === 'signal') {
-        this.signals++;
-        continue;
-      }
+      if (event.event === 'signal') continue; // an alarm carries it
       const { log, onKept } = this.options;
       if (!log) {
         onKept(event);
@@ -131,25 +125,17 @@ export class Runtime {
     return {
       reading: (slot: number, time: number, value: number) => {
         const post = posts[slot]!;
-        if (watchGaps) {
-          const gap = silenceBefore(post.channel, time);
-          if (gap !== null) {
-            const silent = post.channel.tick(gap);
-            if (silent.length > 0) this.keep(silent);
-          }
-        }
+        if (watchGaps) this.keep(tickBefore(post.channel, time));
         const events = post.channel.take(time, value);
         post.arrived = clock.now();
-        post.readings++;
         post.stale = null;
         this.readings++;
-        state.readings++;
         if (post.history !== null && Number.isFinite(value)) post.history.push(time, value);
         if (events.length > 0) this.keep(events);
       },
       stale: (slot: number, time: number, value: number) => {
         const post = posts[slot]!;
-        if (post.readings === 0) post.stale = { time, value };
+        if (post.channel.index < 0) post.stale = { time, value };
       },
       phase: (phase: SourcePhase, sentence: string) => {
         state.phase = phase;
@@ -157,9 +143,6 @@ export class Runtime {
         this.options.onPhase(state);
       },
       fault: (fault: Fault, sample: string) => state.fault(fault, sample),
-      progress: (fraction: number) => {
-        state.progress = fraction;
-      },
       durable: () => this.options.log?.durable() ?? Promise.resolve(),
       pressure: () => (this.undurable > BACKLOG && this.options.log ? this.options.log.durable() : null),
       now: () => clock.now(),

@@ -1,12 +1,16 @@
 import type { Channel } from '../engine/channel.js';
+import type { EngineEvent } from '../engine/events.js';
+
+const NONE: readonly EngineEvent[] = [];
 
 /**
- * The time at which a channel became silent before a reading at `time`, by the readings' own times, or null.
- * Used where readings bring their time (recordings), so that a silence is found at the same moment on every run.
+ * Finds a silence of a channel before `time`, by the readings' own times and as of the moment at which it was one. Used
+ * where readings bring their time (recordings), so that a silence is found at the same moment on every run.
+ * @returns what the channel says of it; nothing where there was none
  */
-export function silenceBefore(channel: Channel, time: number): number | null {
+export function tickBefore(channel: Channel, time: number): readonly EngineEvent[] {
   const { silentAfter } = channel.spec;
   const last = channel.lastTime;
-  if (silentAfter === null || last === null) return null;
-  return time - last > silentAfter ? last + silentAfter + 1 : null;
+  if (silentAfter === null || last === null || !(time - last > silentAfter)) return NONE;
+  return channel.tick(last + silentAfter + 1);
 }

@@ -5,8 +5,6 @@ import { clean } from '../text/clean.js';
 export class SourceState {
   phase: SourcePhase = 'connecting';
   sentence = 'not yet started';
-  progress: number | null = null;
-  readings = 0;
   /** Counts by kind of fault. */
   readonly faults = new Map<Fault, number>();
   /** The newest sample of each kind, cleaned. */

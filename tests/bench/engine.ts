@@ -2,6 +2,7 @@ import { sampleStandardDeviation, mean } from 'simple-statistics';
 import { Channel } from '../../src/engine/channel.js';
 import { ZONE_RULES } from '../../src/engine/rules.js';
 import type { ChannelSpec } from '../../src/engine/spec.js';
+import { FLOW } from './flow.js';
 import type { BenchRow } from './row.js';
 
 const WINDOW = 500;
@@ -10,21 +11,10 @@ const SLICE = 10_000; // readings: so short that whatever else runs on the machi
 const RECOMPUTED = 100; // readings of a slice that is a hundred times as slow
 
 const SPEC: ChannelSpec = {
-  channel: 'flow',
-  unit: 'L/min',
-  every: 100,
-  silentAfter: 2000,
-  range: [0, 60],
-  tolerance: [30, 50],
-  resolution: 0.01,
-  band: { centre: 41.2, sigma: 0.31 },
-  rules: ZONE_RULES,
+  ...FLOW,
   k: 9, // quiet throughout: what is measured is the reading that is no alarm. 1 sigma of the zones is then 3
   sideRun: 60,
-  frozen: true,
-  frozenOdds: 1e-9,
   window: WINDOW,
-  clearAfter: 10,
 };
 /** Every rule but those that noise of any kind sets off sooner or later. */
 const EVERY_RULE: ChannelSpec = {

@@ -3,12 +3,12 @@ import { once } from 'node:events';
 import { join } from 'node:path';
 import mqtt from 'mqtt';
 import { mqttSource } from '../../adapters/mqtt/source.js';
-import type { MqttOptions } from '../../adapters/options.js';
 import type { Sink, Wanted } from '../../adapters/source.js';
 import { Channel } from '../../src/engine/channel.js';
 import { ZONE_RULES } from '../../src/engine/rules.js';
 import { Broker } from '../real/broker.js';
 import type { RawPublishing } from './rawPublisher.js';
+import { atBroker } from '../adapters/mqttOptions.js';
 import type { BenchRow } from './row.js';
 
 const MESSAGES = 100_000;
@@ -107,21 +107,7 @@ async function run(contestant: Contestant, kind: Kind): Promise<Run> {
 }
 
 const kilter: Contestant = async (url, { qos, json }, taken) => {
-  const options: MqttOptions = {
-    url,
-    protocol: '3.1.1',
-    clientId: 'bench',
-    keepalive: 60_000,
-    qos,
-    ca: null,
-    cert: null,
-    key: null,
-    user: null,
-    password: null,
-    maxPayload: 65_536,
-    retryFrom: 100,
-    retryTo: 1000,
-  };
+  const options = atBroker(url, { clientId: 'bench', keepalive: 60_000, qos, retryFrom: 100, retryTo: 1000 });
   const each = Array.from({ length: TOPICS }, (_, slot) => slot);
   const wanted = each.map((slot): Wanted => ({
     slot,

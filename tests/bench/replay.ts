@@ -2,9 +2,9 @@ import { execFileSync } from 'node:child_process';
 import { closeSync, mkdtempSync, openSync, rmSync, statSync, writeSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { ZONE_RULES } from '../../src/engine/rules.js';
 import type { ChannelSpec } from '../../src/engine/spec.js';
 import { replay } from '../../src/stand/replay.js';
+import { FLOW } from './flow.js';
 import type { BenchRow } from './row.js';
 
 const LINES = 10_000_000;
@@ -14,21 +14,9 @@ const RIVALS = ['mawk', 'gawk'];
 const MEAN_AND_SD = 'BEGIN{FS=","} NR>1{n++;s+=$2;q+=$2*$2} END{m=s/n; printf "%d %.9g %.9g\\n", n, m, sqrt((q-n*m*m)/(n-1))}';
 
 const SPEC: ChannelSpec = {
-  channel: 'flow',
-  unit: 'L/min',
-  every: 100,
-  silentAfter: 2000,
-  range: [0, 60],
-  tolerance: [30, 50],
-  resolution: 0.01,
-  band: { centre: 41.2, sigma: 0.31 },
-  rules: ZONE_RULES,
+  ...FLOW,
   k: 5.2, // the zones stretched to about a false alarm in a million readings
   sideRun: 24,
-  frozen: true,
-  frozenOdds: 1e-9,
-  window: 500,
-  clearAfter: 10,
 };
 
 /**

@@ -71,9 +71,9 @@ export function alarm(given: Partial<AlarmView> = {}): AlarmView {
 /** A stand in which all is well, unless told otherwise. */
 export function inventedStand(given: Partial<StandView> = {}, count = 6): StandView {
   return {
-    stand: 'coolant pump cell 2', now: NOW, startedAt: NOW - 3_600_000, channels: Array.from({ length: count }, (_, slot) => channel(slot)),
+    stand: 'coolant pump cell 2', now: NOW, channels: Array.from({ length: count }, (_, slot) => channel(slot)),
     alarms: [], sources: [{ source: 'cell-bus', phase: 'open', sentence: 'open', faults: 0 }, { source: 'plc', phase: 'open', sentence: 'open', faults: 0 }],
-    rate: 30, readings: 108_000, logTrouble: null, notice: null, ...given,
+    rate: 30, logTrouble: null, notice: null, ...given,
   };
 }
 
